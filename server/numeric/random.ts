@@ -34,7 +34,7 @@ export function randomStream(seed: number, shard: number, index: number): Random
   return {
     uniform: () => next() / 4294967296,
     normal() {
-      if (spare === spare) {
+      if (!Number.isNaN(spare)) {
         const value = spare;
         spare = Number.NaN;
         return value;
