@@ -53,6 +53,21 @@ export interface FluenceArtefact {
   readonly proton: Float32Array;
   /** Evidence region per (L bin, energy bin), index bin · nBins + energyBin. */
   readonly regions: Readonly<Record<'electron' | 'proton', readonly EvidenceRegion[]>>;
+  /** Absent when no time history was kept: peak dose rates and 10 h fluences are then not assessed. */
+  readonly history?: FluxHistory;
+}
+
+/**
+ * Flux along the nominal variant, so that dose rates and running fluences behind any shield can be folded later.
+ * Linear between samples; a gap in the path is bridged by two zero samples. At most 2000 samples.
+ */
+export interface FluxHistory {
+  /** Shape (n,), TDB seconds past J2000, ascending. */
+  readonly epochTdbS: Float64Array;
+  /** Differential omnidirectional flux, cm⁻² s⁻¹ MeV⁻¹, at ELECTRON_EDGES_MEV; index sample · 91 + edge. */
+  readonly electron: Float32Array;
+  /** As `electron`, at PROTON_EDGES_MEV; index sample · 121 + edge. */
+  readonly proton: Float32Array;
 }
 
 export interface LBinSpread {
