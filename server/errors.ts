@@ -34,6 +34,38 @@ export const ERROR_CODES = {
     title: 'Unknown material',
     help: 'The material id is neither in the built-in list (GET /api/materials) nor a chemical symbol that list contains.',
   },
+  // --- dose
+  OTHER_SOURCE_INVALID: {
+    status: 422,
+    title: 'Other dose source is not usable',
+    help: 'A dose source beside the belts needs a name, a citation, a mission phase and exactly one of a dose, a dose-depth table (ascending depths, positive doses) or a fluence spectrum (ascending energies, no negative values).',
+  },
+  DOSE_DEPTH_OUTSIDE_SPAN: {
+    status: 422,
+    title: 'Depth lies outside the dose-depth table',
+    help: 'A dose-depth table is read between its first and last depth only. Supply a table that spans the thickness asked for; nothing is extrapolated.',
+  },
+  // --- margin
+  PART_INVALID: {
+    status: 422,
+    title: 'Part is not usable',
+    help: 'A part needs an id, a name, a place, and either a capability in krad(Si) with its basis or at least two failure doses; required margin, sample size and dose rate must be above zero. Each entry of `errors` names the row and column or the field.',
+  },
+  PARTS_CSV_INVALID: {
+    status: 422,
+    title: 'Parts table is not usable',
+    help: 'A parts table is CSV in UTF-8 with a header line. Columns: partId, name, description, technology, placeId, capabilityKradSi, capabilityBasis, sampleSize, doseRateRadSiPerS, failureDosesKradSi (separated by spaces or semicolons), lotConfidence, lotProbability, requiredRdm. Each entry of `errors` names row and column.',
+  },
+  ASSESSMENT_INVALID: {
+    status: 422,
+    title: 'Assessment request does not hold together',
+    help: 'Cases must name trajectories of the request, parts and options must be there, percentile, draws and margins must lie in their ranges. Each entry of `errors` names the field.',
+  },
+  THICKNESS_UNREACHABLE: {
+    status: 422,
+    title: 'No thickness in the range meets the target',
+    help: 'The dose or margin asked for is not met at the thickest allowed layer, or is met already at the thinnest. Widen the range, choose another layer or material, or lower the target.',
+  },
 } as const satisfies Record<string, ErrorRow>;
 
 export type ErrorCode = keyof typeof ERROR_CODES;
