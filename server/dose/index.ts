@@ -1,0 +1,38 @@
+export { type DamageDose, foldDamage, NEUTRON_1MEV_NIEL_MEV_CM2_PER_G } from './damage.ts';
+export { type DoseDepthCurve, doseDepthCurve, readDoseDepth } from './doseDepth.ts';
+export { dot, foldDose, foldTransmittedElectrons } from './fold.ts';
+export {
+  type BinnedHistory,
+  binHistory,
+  CHARGING_LIMITS,
+  type ChargingLimits,
+  ELEMENTARY_CHARGE_PC,
+  type PeakRate,
+  peakDoseRate,
+  type TransmittedPeak,
+  transmittedPeak,
+} from './history.ts';
+export {
+  checkOtherSource,
+  kingEventExample,
+  kingEventIntegralPerCm2,
+  type OtherSpectra,
+  otherSpectra,
+} from './otherSources.ts';
+export {
+  addVariantInto,
+  ELECTRON_BINS,
+  nominalEdges,
+  PROTON_BINS,
+  SPECIES,
+  spectraByEvidence,
+  spectraFromEdges,
+  type VariantWeights,
+} from './spectra.ts';
+export type {
+  DoseDepthTable,
+  FluenceSpectra,
+  FoldedDose,
+  OtherFluenceInput,
+  OtherSourceInput,
+} from './types.ts';
