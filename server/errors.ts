@@ -34,6 +34,78 @@ export const ERROR_CODES = {
     title: 'Unknown material',
     help: 'The material id is neither in the built-in list (GET /api/materials) nor a chemical symbol that list contains.',
   },
+  // --- time, ephemeris
+  EPOCH_UNREADABLE: {
+    status: 422,
+    title: 'Epoch cannot be read',
+    help: 'An epoch is YYYY-MM-DDThh:mm:ss[.d][Z] or YYYY-DDDThh:mm:ss[.d][Z] with all leading zeros. The second 60 exists only in UTC at a leap second, and UTC only from 1972-01-01.',
+  },
+  EPHEMERIS_UNREADABLE: {
+    status: 400,
+    title: 'File is no ephemeris that can be read',
+    help: 'The file is empty, compressed, damaged or of another kind. Readable are: CCSDS orbit ephemeris messages (text or XML, versions 1 to 3), binary SPK kernels, and CSV tables whose columns name their units.',
+  },
+  OEM_INVALID: {
+    status: 422,
+    title: 'Orbit ephemeris message is not valid',
+    help: 'The message breaks a rule of CCSDS 502.0-B-3 (or 505.0-B-3 for XML). The problem names the line and the rule. Nothing is repaired: correct the file where it is written.',
+  },
+  CSV_INVALID: {
+    status: 422,
+    title: 'Ephemeris table is not usable',
+    help: 'A CSV ephemeris has a header line, one epoch column and three position and three velocity columns whose units are named, then rows of numbers with ascending epochs. Columns with other names are mapped on upload by `columns`. The problem names line and column.',
+  },
+  SPK_INVALID: {
+    status: 400,
+    title: 'SPK kernel is damaged',
+    help: 'The binary kernel is truncated, was changed by a transfer in text mode, or its records contradict each other. Transfer it again in binary mode and compare sizes.',
+  },
+  SPK_TYPE_REFUSED: {
+    status: 422,
+    title: 'SPK data type is not supported',
+    help: 'Readable are SPK data types 1, 2, 3, 5, 8, 9, 12, 13, 18 and 21 in the frames J2000 and ECLIPJ2000. Export the trajectory in one of these.',
+  },
+  TIME_SYSTEM_REFUSED: {
+    status: 422,
+    title: 'Time system is not supported',
+    help: 'Readable are UTC, TAI, TT, TDB, TCB and GPS. Mission clocks (MET, MRT, SCLK) and sidereal time need an agreement between the parties, UT1 needs Earth-orientation data; convert to one of the readable scales.',
+  },
+  FRAME_REFUSED: {
+    status: 422,
+    title: 'Reference frame is not supported',
+    help: 'Readable are the inertial frames EME2000, J2000, ICRF, GCRF and ECLIPJ2000. Rotating frames, frames of date and planet-equator frames would need an orientation that the file does not define; export in an inertial frame.',
+  },
+  // --- trajectory
+  CENTER_REFUSED: {
+    status: 422,
+    title: 'Centre of the ephemeris is not usable',
+    help: 'States must be relative to Uranus, Neptune or their barycentre. A text ephemeris about the Sun or the solar-system barycentre would need the planet as well; export it relative to the planet. An SPK kernel may carry the planet itself.',
+  },
+  PLANET_NEEDED: {
+    status: 422,
+    title: 'Planet is not settled',
+    help: 'The file does not settle which planet the trajectory belongs to, or it settles another one than the request names. Give `planet` as uranus or neptune.',
+  },
+  TARGET_NEEDED: {
+    status: 422,
+    title: 'Spacecraft is not settled',
+    help: 'The kernel holds several bodies, or not the one asked for. Give `targetId`, one of the ids that the problem lists.',
+  },
+  TRAJECTORY_EMPTY: {
+    status: 422,
+    title: 'Nothing of the trajectory can be evaluated',
+    help: 'No stretch of time is left in which the spacecraft is known relative to the planet: the segments are too short, or the kernel does not carry what links the spacecraft to the planet.',
+  },
+  TRAJECTORY_OUTSIDE_SPAN: {
+    status: 422,
+    title: 'Epoch lies outside the trajectory',
+    help: 'A trajectory is evaluated only inside its usable spans; nothing is extrapolated.',
+  },
+  SKETCH_INVALID: {
+    status: 422,
+    title: 'Sketched trajectory is not possible',
+    help: 'Periapsis must lie outside the planet, speeds and periods above zero, angles within a turn, and the path within the limits of states and passes. Each entry of `errors` names the field.',
+  },
   // --- dose
   OTHER_SOURCE_INVALID: {
     status: 422,
