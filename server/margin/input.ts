@@ -35,8 +35,11 @@ export interface AssessedPlace {
   readonly thicker10Pct?: ShieldResponse;
   /** The same shield over further target materials. */
   readonly otherTargets?: readonly ShieldResponse[];
-  /** Aluminium of the same areal density, mm: where dose-depth tables of other sources are read. */
-  readonly aluminiumEquivalentMm?: number;
+  /**
+   * Aluminium of the same areal density, mm, by direction: where dose-depth tables of other sources are read. One entry
+   * of weight 1 for a plain stack; weights sum to 1. Doses are averaged over it, never thicknesses.
+   */
+  readonly aluminiumEquivalent?: readonly { readonly weight: number; readonly thicknessMm: number }[];
   /** True for an option made from a bare stack: every part sits here, whatever its own place is called. */
   readonly holdsAllParts?: boolean;
 }

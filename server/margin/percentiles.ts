@@ -1,0 +1,45 @@
+/** Order statistics of drawn doses. */
+
+/** Ascending copy. */
+export function sorted(values: Float64Array): Float64Array {
+  return values.slice().sort();
+}
+
+/**
+ * Percentile by linear interpolation between order statistics (definition 7 of Hyndman & Fan 1996).
+ *
+ * @param ascending - shape (n,), n ≥ 1
+ * @param percent - 0 to 100
+ */
+export function percentile(ascending: Float64Array, percent: number): number {
+  const position = (percent / 100) * (ascending.length - 1);
+  const low = Math.floor(position);
+  const high = Math.min(low + 1, ascending.length - 1);
+  return ascending[low] + (position - low) * (ascending[high] - ascending[low]);
+}
+
+/** Share of the values that lie below a limit. */
+export function shareBelow(ascending: Float64Array, limit: number): number {
+  let low = 0;
+  let high = ascending.length;
+  while (low < high) {
+    const middle = (low + high) >> 1;
+    if (ascending[middle] < limit) low = middle + 1;
+    else high = middle;
+  }
+  return low / ascending.length;
+}
+
+/**
+ * P(capability > factor × dose) with dose drawn and capability at points of equal probability, independent of it.
+ *
+ * The average over both is taken in full rather than by pairing them, so it carries only the noise of the doses.
+ *
+ * @param dosesAscending - shape (draws,)
+ * @param capabilityPoints - shape (m,), same unit
+ */
+export function probabilityAbove(dosesAscending: Float64Array, capabilityPoints: Float64Array, factor: number): number {
+  let sum = 0;
+  for (let k = 0; k < capabilityPoints.length; k++) sum += shareBelow(dosesAscending, capabilityPoints[k] / factor);
+  return sum / capabilityPoints.length;
+}
