@@ -106,6 +106,17 @@ export const ERROR_CODES = {
     title: 'Sketched trajectory is not possible',
     help: 'Periapsis must lie outside the planet, speeds and periods above zero, angles within a turn, and the path within the limits of states and passes. Each entry of `errors` names the field.',
   },
+  // --- field
+  FIELD_MODEL_UNKNOWN: {
+    status: 422,
+    title: 'Unknown field model',
+    help: 'The field model id is not in the list of GET /api/field-models, or belongs to the other planet.',
+  },
+  FIELD_POINT_INVALID: {
+    status: 422,
+    title: 'Point outside the validity of the field',
+    help: 'Points are given in reference radii of the field model, in its body-fixed frame, at 0.5 to 30 radii from the centre; the mirror field factor is at least 1.',
+  },
   // --- dose
   OTHER_SOURCE_INVALID: {
     status: 422,
