@@ -1,0 +1,10 @@
+export { type CsvContext, readCsv } from './csv.ts';
+export type { CsvColumns, EpochFormat, LengthUnit, SpeedUnit } from './csvColumns.ts';
+export { detectFormat, type EphemerisFormat } from './detect.ts';
+export { eclipticToIcrfInPlace, plainName } from './names.ts';
+export { NodeInterpolator } from './nodeInterpolator.ts';
+export type { InputFrame, InterpolationKind, NodeEphemeris, NodeSegment, SegmentMetadata } from './nodes.ts';
+export { readOemKvn } from './oemKvn.ts';
+export { readOemXml } from './oemXml.ts';
+export { PolynomialWindow } from './polynomial.ts';
+export { type ByteSource, bytesOf } from './source.ts';
