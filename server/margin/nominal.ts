@@ -11,7 +11,7 @@ import {
   type VariantWeights,
 } from '../dose/index.ts';
 import { EVIDENCE_REGIONS, type EvidenceRegion } from '../flux/types.ts';
-import { edgesMeV } from '../numeric/spectrumGrid.ts';
+import { edgesMeV, type Species } from '../numeric/spectrumGrid.ts';
 import type { ShieldResponse } from '../shielding/types.ts';
 import type { AssessedTrajectory } from './input.ts';
 import { independentPhases, type Leg, phaseDistributions } from './schedule.ts';
@@ -70,6 +70,11 @@ export function trajectorySpectra(trajectory: AssessedTrajectory): TrajectorySpe
     phaseMeanEvidence: single ? onePassEvidence : spectraByEvidence(fluence, phaseWeights),
     referenceEdges: { electron: reference('electron'), proton: reference('proton') },
   };
+}
+
+/** Nominal differential fluence of one pass at the edges of a grid, cm⁻² MeV⁻¹. */
+export function nominalEdgesOf({ fluence }: AssessedTrajectory, species: Species): Float64Array {
+  return nominalEdges(fluence, [{ variant: fluence.nominalVariant, weight: 1 }], species);
 }
 
 function spectraOf({ fluence }: AssessedTrajectory, weights: VariantWeights): FluenceSpectra {

@@ -1,4 +1,5 @@
 /** Order statistics of drawn doses. */
+import { GY_PER_KRAD } from '../units.ts';
 
 /** Ascending copy. */
 export function sorted(values: Float64Array): Float64Array {
@@ -35,11 +36,20 @@ export function shareBelow(ascending: Float64Array, limit: number): number {
  *
  * The average over both is taken in full rather than by pairing them, so it carries only the noise of the doses.
  *
- * @param dosesAscending - shape (draws,)
- * @param capabilityPoints - shape (m,), same unit
+ * @param beltDosesGyAscending - shape (draws,), Gy
+ * @param capabilityPointsKradSi - shape (m,), krad(Si)
+ * @param otherKradSi - dose of the other sources, added to every draw, krad(Si)
  */
-export function probabilityAbove(dosesAscending: Float64Array, capabilityPoints: Float64Array, factor: number): number {
+export function probabilityAbove(
+  beltDosesGyAscending: Float64Array,
+  capabilityPointsKradSi: Float64Array,
+  factor: number,
+  otherKradSi: number,
+): number {
   let sum = 0;
-  for (let k = 0; k < capabilityPoints.length; k++) sum += shareBelow(dosesAscending, capabilityPoints[k] / factor);
-  return sum / capabilityPoints.length;
+  for (let k = 0; k < capabilityPointsKradSi.length; k++) {
+    const limitGy = (capabilityPointsKradSi[k] / factor - otherKradSi) * GY_PER_KRAD;
+    sum += shareBelow(beltDosesGyAscending, limitGy);
+  }
+  return sum / capabilityPointsKradSi.length;
 }

@@ -167,7 +167,7 @@ export interface DoseDepthRow {
   readonly electronKradSi: readonly number[];
   readonly bremsstrahlungKradSi: readonly number[];
   readonly protonKradSi: readonly number[];
-  /** Other sources that are defined at that depth; sources given as one dose are left out and named in a notice. */
+  /** Other sources that are defined at that depth; what is left out is named in a notice. */
   readonly otherKradSi: readonly number[];
   readonly totalKradSi: readonly number[];
   readonly bandKradSi: {
@@ -224,8 +224,9 @@ export interface ShieldDoseRow {
   readonly doseAtVerdictKradSi: number | null;
   /** 1 σ statistical error of the nominal belt dose from the response, relative. */
   readonly statisticalErrorRel: number | null;
-  /** Share of the nominal belt dose from where nothing was measured. */
+  /** Share of the nominal total dose that comes from belts where nothing was measured. */
   readonly extrapolatedFraction: number | null;
+  /** Shares of the nominal belt dose; they sum to 1, or are all 0 where the belts bring nothing. */
   readonly byEvidence: Readonly<Record<EvidenceRegion, number>> | null;
   /** Nominal dose of each leg with all its repetitions. */
   readonly byLeg: readonly {
@@ -321,7 +322,7 @@ export interface ResultSummary {
   readonly whatWouldChange: readonly string[];
 }
 
-/** The lowest achieved margin at the study's percentile and what drives it. */
+/** The margin that is lowest against its requirement at the study's percentile, and what drives it. */
 export interface LowestMargin {
   readonly partId: string;
   readonly caseId: string;

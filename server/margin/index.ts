@@ -1,0 +1,26 @@
+export { type AssessOptions, assess } from './assess.ts';
+export { checkAssessmentInput } from './checkInput.ts';
+export { type AssessmentComparison, compareAssessments } from './compare.ts';
+export type {
+  AssessedCase,
+  AssessedOption,
+  AssessedPlace,
+  AssessedTrajectory,
+  AssessmentInput,
+  PartInput,
+} from './input.ts';
+export { lotCapability, toleranceFactor, zeroFailureSampleSize } from './lot.ts';
+export { CAPABILITY_BASES, checkParts, preparePart } from './parts.ts';
+export { formatPartsCsv, PART_COLUMNS, parsePartsCsv } from './partsCsv.ts';
+export { resultHash } from './provenance.ts';
+export type * from './result.ts';
+export { VERDICTS } from './result.ts';
+export {
+  solveThickness,
+  type ThicknessCandidate,
+  type ThicknessInput,
+  type ThicknessResult,
+  type ThicknessSolution,
+  type ThicknessTools,
+} from './thickness.ts';
+export { VERDICT_REASONS, verdictOf } from './verdict.ts';

@@ -1,0 +1,107 @@
+/** What made a result: the hash of every input, and the hash of the result itself. */
+import { contentHash } from '../canonical.ts';
+import type { AssessmentInput } from './input.ts';
+import type { AssessmentResult, ResultProvenance } from './result.ts';
+
+/** Keys that name records or moments, not content: a re-run under other ids must give the same hash. */
+const NOT_CONTENT = new Set([
+  'studyId',
+  'trajectoryId',
+  'caseId',
+  'optionId',
+  'placeId',
+  'partId',
+  'lightestMeetingOptionId',
+  'utc',
+  'peakUtc',
+  'resultSha256',
+]);
+
+/** The value without record ids and times, at every depth. */
+function content(value: unknown): unknown {
+  if (Array.isArray(value)) return value.map(content);
+  if (value === null || typeof value !== 'object') return value;
+  const out: Record<string, unknown> = {};
+  for (const [key, entry] of Object.entries(value)) if (!NOT_CONTENT.has(key)) out[key] = content(entry);
+  return out;
+}
+
+/** SHA-256 over the canonical JSON of a result without record ids and times; rows stand for what they name by order. */
+export function resultHash(result: AssessmentResult): string {
+  return contentHash(content(result));
+}
+
+/** Provenance of a result, its own hash still empty. */
+export function provenanceOf(input: AssessmentInput): ResultProvenance {
+  const inputs: { kind: string; name: string; sha256: string }[] = [];
+  for (const trajectory of input.trajectories) {
+    inputs.push({ kind: 'trajectory', name: trajectory.name, sha256: trajectory.sourceSha256 });
+    inputs.push({ kind: 'fluence', name: trajectory.name, sha256: trajectory.fluence.inputsSha256 });
+  }
+  const byId = new Map(input.trajectories.map(({ trajectoryId, sourceSha256 }) => [trajectoryId, sourceSha256]));
+  for (const { name, legs } of input.cases) {
+    const flown = legs.map(({ trajectoryId, repetitions }) => ({
+      sha256: byId.get(trajectoryId) ?? null,
+      repetitions,
+    }));
+    inputs.push({ kind: 'case', name, sha256: contentHash({ name, legs: flown }) });
+  }
+  const responses = new Set<string>();
+  for (const option of input.options) {
+    const places = option.places.map(({ name, geometry, shieldText, massKg, response }) => ({
+      name,
+      geometry,
+      shieldText,
+      massKg,
+      responseSha256: response?.sha256 ?? null,
+    }));
+    inputs.push({ kind: 'option', name: option.name, sha256: contentHash({ name: option.name, places }) });
+    for (const { name, response } of option.places) {
+      if (response === null || responses.has(response.sha256)) continue;
+      responses.add(response.sha256);
+      inputs.push({ kind: 'response', name: `${option.name}: ${name}`, sha256: response.sha256 });
+    }
+  }
+  for (const part of input.parts) {
+    inputs.push({ kind: 'part', name: part.name, sha256: contentHash({ ...part, partId: null, placeId: null }) });
+  }
+  for (const source of input.otherSources) {
+    inputs.push({ kind: 'otherSource', name: source.name, sha256: contentHash({ ...source, caseIds: null }) });
+  }
+  for (const { geometry, materialId, depthsMm, responses: at } of input.doseDepthTables) {
+    inputs.push({
+      kind: 'doseDepthTable',
+      name: `${materialId} ${geometry}`,
+      sha256: contentHash({ geometry, materialId, depthsMm, responses: at.map(({ sha256 }) => sha256) }),
+    });
+  }
+  const { studyId, ...study } = input.study;
+  const models = new Map<string, ResultProvenance['models'][number]>();
+  const add = (kind: ResultProvenance['models'][number]['kind'], modelId: string): void => {
+    models.set(`${kind} ${modelId}`, { kind, modelId });
+  };
+  for (const { environment, fluence } of input.trajectories) {
+    add('field', environment.fieldModelId);
+    for (const { fieldModelId } of fluence.variants) add('field', fieldModelId);
+    add('rotation', environment.rotationModelId);
+    add('belt', fluence.beltModelId);
+  }
+  for (const { places } of input.options) {
+    for (const { response } of places) if (response !== null) add('response', response.engineVersion);
+  }
+  return {
+    ...input.runtime,
+    seed: input.sampling.seed,
+    draws: input.sampling.draws,
+    inputs,
+    inputsSha256: contentHash({
+      inputs: inputs.map(({ kind, sha256 }) => ({ kind, sha256 })),
+      study,
+      sampling: input.sampling,
+      environments: input.trajectories.map(({ environment }) => environment),
+      engineVersion: input.runtime.engineVersion,
+    }),
+    models: [...models.values()],
+    resultSha256: '',
+  };
+}
