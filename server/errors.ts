@@ -117,6 +117,12 @@ export const ERROR_CODES = {
     title: 'Point outside the validity of the field',
     help: 'Points are given in reference radii of the field model, in its body-fixed frame, at 0.5 to 30 radii from the centre; the mirror field factor is at least 1.',
   },
+  // --- flux
+  BELT_MODEL_UNKNOWN: {
+    status: 422,
+    title: 'Unknown belt model',
+    help: 'The belt model id is neither built in nor an uploaded belt table (GET /api/belt-models), or it is for the other planet.',
+  },
   // --- dose
   OTHER_SOURCE_INVALID: {
     status: 422,
