@@ -6,7 +6,7 @@
  * margins use the limit and probabilities use the predictive distribution.
  */
 import { AppError } from '../errors.ts';
-import { bisect, noncentralTCdf, normalQuantile, studentTQuantile } from './distributions.ts';
+import { bisect, noncentralTCdf, normalQuantile, studentTQuantile } from '../numeric/distributions.ts';
 import type { LotStatistics } from './result.ts';
 
 export const DEFAULT_LOT_CONFIDENCE = 0.9;

@@ -9,7 +9,7 @@ import {
   normalQuantile,
   studentTCdf,
   studentTQuantile,
-} from '../../../server/margin/distributions.ts';
+} from '../../../server/numeric/distributions.ts';
 import { lotCapability, predictivePoints, toleranceFactor, zeroFailureSampleSize } from '../../../server/margin/lot.ts';
 
 // Source: fixtures/golden/lot-tolerance-factors/README.md (SciPy's exact noncentral t).
