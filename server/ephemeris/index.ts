@@ -1,5 +1,6 @@
 export { type CsvContext, readCsv } from './csv.ts';
 export type { CsvColumns, EpochFormat, LengthUnit, SpeedUnit } from './csvColumns.ts';
+export type { SpkSummary } from './daf.ts';
 export { detectFormat, type EphemerisFormat } from './detect.ts';
 export { eclipticToIcrfInPlace, plainName } from './names.ts';
 export { NodeInterpolator } from './nodeInterpolator.ts';
@@ -8,3 +9,5 @@ export { readOemKvn } from './oemKvn.ts';
 export { readOemXml } from './oemXml.ts';
 export { PolynomialWindow } from './polynomial.ts';
 export { type ByteSource, bytesOf } from './source.ts';
+export { SpkKernel, type SpkLink } from './spk.ts';
+export { propagateInto } from './twoBody.ts';

@@ -2,6 +2,7 @@ import { PLANETS, type PlanetId } from '../constants/planets.ts';
 import { eclipticToIcrfInPlace, type NodeEphemeris, NodeInterpolator, type NodeSegment } from '../ephemeris/index.ts';
 import { AppError } from '../errors.ts';
 import { centerOf, refuseCenter, requireSamePlanet } from './centers.ts';
+import { giantNamed, passNotice } from './giants.ts';
 import { type PathPiece, safeUtc } from './pieces.ts';
 import type { TrajectoryNotice, TrajectoryRequest } from './types.ts';
 
@@ -115,9 +116,26 @@ function chooseSegments(
       severity: 'caution',
       text: `Segment ${i + 1} (${safeUtc(segment.metadata.usableStartTdbS)} to ${safeUtc(segment.metadata.usableStopTdbS)}) is relative to "${segment.metadata.centerName}" and is left out: that time counts as no dose.`,
     });
+    notices.push(...passOfLeftOut(segment));
   }
   if (barycenter) notices.push(barycenterNotice(planet));
   return { planet, used, barycenter };
+}
+
+/** Whether a left-out segment about another giant planet passes close to it, judged by its nodes. */
+function passOfLeftOut(segment: NodeSegment): TrajectoryNotice[] {
+  const giant = giantNamed(segment.metadata.centerName);
+  if (giant === null) return [];
+  let smallestKm = Number.POSITIVE_INFINITY;
+  let at = 0;
+  for (let i = 0; i < segment.epochsTdbS.length; i++) {
+    const radiusKm = Math.hypot(segment.states[6 * i], segment.states[6 * i + 1], segment.states[6 * i + 2]);
+    if (radiusKm < smallestKm) {
+      smallestKm = radiusKm;
+      at = i;
+    }
+  }
+  return passNotice(giant, smallestKm, segment.epochsTdbS[at]);
 }
 
 export function barycenterNotice(planet: PlanetId): TrajectoryNotice {

@@ -2,13 +2,13 @@ import { createHash } from 'node:crypto';
 import { contentHash } from '../canonical.ts';
 import { PLANETS } from '../constants/planets.ts';
 import { type ByteSource, detectFormat } from '../ephemeris/index.ts';
-import { AppError } from '../errors.ts';
 import { defaultRotationModel } from '../frames/rotation.ts';
 import { surveyPath } from './closestApproach.ts';
 import { osculating, surfacePoint } from './geometry.ts';
 import { readNodes } from './nodeReading.ts';
 import { PiecewisePath, safeUtc } from './pieces.ts';
 import { gapsOf, lowestOf, pathNotices, sentences } from './reading.ts';
+import { readSpk } from './spkReading.ts';
 import type { ClosestApproach, TrajectoryReading, TrajectoryRequest, TrajectorySummary } from './types.ts';
 
 const HASH_CHUNK_BYTES = 1 << 20;
@@ -21,8 +21,7 @@ const HASH_CHUNK_BYTES = 1 << 20;
  */
 export function readTrajectory(source: ByteSource, request: TrajectoryRequest = {}): TrajectoryReading {
   const format = detectFormat(source);
-  if (format === 'spk') throw new AppError('SPK_TYPE_REFUSED', 'Kernels are not read by this version.');
-  const read = readNodes(source, format, request);
+  const read = format === 'spk' ? readSpk(source, request) : readNodes(source, format, request);
   const sha256 = sourceSha256(source);
   const planet = PLANETS[read.planet];
   const { pieces } = read;
