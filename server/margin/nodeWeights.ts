@@ -48,7 +48,7 @@ export function referenceSpectrum(species: Species, differential: Float64Array):
     .filter(({ edge }) => differential[edge] > 0);
   const x = valid.map(({ edge }) => Math.log(edges[edge]));
   const stencils = Array.from(bins, (_, bin) => {
-    const centre = 0.5 * Math.log(edges[bin] * edges[bin + 1]);
+    const centre = centroid(edges, differential, bin);
     if (valid.length === 0) return { nodes: [], weights: [] };
     const clamped = Math.min(Math.max(centre, x[0]), x[x.length - 1]);
     let low = 0;
@@ -79,6 +79,17 @@ export function nodeWeights(reference: ReferenceSpectrum, response: ArrayLike<nu
   }
   const first = values.findIndex((value) => value !== 0);
   return { values, from: first < 0 ? values.length : first };
+}
+
+/** Mean ln E of the particles in a bin, for the power law between its edges. */
+function centroid(edges: Float64Array, differential: Float64Array, bin: number): number {
+  const width = Math.log(edges[bin + 1] / edges[bin]);
+  const low = differential[bin];
+  const high = differential[bin + 1];
+  const growth = low > 0 && high > 0 ? Math.log(high / low) + width : 0;
+  // Mean of u over [0, w] with weight e^{gu/w}: w (1/(1 − e^{−g}) − 1/g), whose series is w (1/2 + g/12).
+  const share = Math.abs(growth) < 1e-3 ? 0.5 + growth / 12 : -1 / Math.expm1(-growth) - 1 / growth;
+  return Math.log(edges[bin]) + share * width;
 }
 
 function everySecond(edgeCount: number): number[] {

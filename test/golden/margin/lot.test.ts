@@ -1,5 +1,6 @@
 import { readFileSync } from 'node:fs';
 import { describe, expect, it } from 'vitest';
+import { lotCapability, predictivePoints, toleranceFactor, zeroFailureSampleSize } from '../../../server/margin/lot.ts';
 import {
   betaI,
   gammaQ,
@@ -10,7 +11,6 @@ import {
   studentTCdf,
   studentTQuantile,
 } from '../../../server/numeric/distributions.ts';
-import { lotCapability, predictivePoints, toleranceFactor, zeroFailureSampleSize } from '../../../server/margin/lot.ts';
 
 // Source: fixtures/golden/lot-tolerance-factors/README.md (SciPy's exact noncentral t).
 const rows = readFileSync(
