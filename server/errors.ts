@@ -123,6 +123,17 @@ export const ERROR_CODES = {
     title: 'Unknown belt model',
     help: 'The belt model id is neither built in nor an uploaded belt table (GET /api/belt-models), or it is for the other planet.',
   },
+  // --- fluence
+  ROTATION_MODEL_UNKNOWN: {
+    status: 422,
+    title: 'Unknown rotation model',
+    help: 'The rotation model id is not in the list of GET /api/rotation-models, or belongs to the other planet.',
+  },
+  PHASE_INVALID: {
+    status: 422,
+    title: 'Rotation phase out of range',
+    help: 'The phase treatment is published, offset (with offsetDeg from -360 to 360), drawn, or sweep (with a count from 4 to 360).',
+  },
   // --- dose
   OTHER_SOURCE_INVALID: {
     status: 422,
