@@ -44,7 +44,7 @@ export class DafFile {
   private readonly wordCount: number;
   private readonly pages = new Map<number, Float64Array>();
   private lastPage = -1;
-  private lastWords = new Float64Array(0);
+  private lastWords: Float64Array = new Float64Array(0);
 
   /** @throws {AppError} SPK_INVALID for damaged files */
   constructor(source: ByteSource) {

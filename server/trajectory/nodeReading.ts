@@ -4,6 +4,7 @@ import { checkNodes } from './nodeChecks.ts';
 import { type NodePiece, nodePieces } from './nodePath.ts';
 import { safeUtc } from './pieces.ts';
 import { nodeNotices } from './reading.ts';
+import { SKETCH_ORIGINATOR } from './sketchCommon.ts';
 import type { SourceReading } from './sourceReading.ts';
 import type { SegmentSummary, TrajectoryNotice, TrajectoryRequest, TrajectorySummary } from './types.ts';
 
@@ -85,6 +86,13 @@ function assumptionNotices(
   frameName: string,
 ): TrajectoryNotice[] {
   const notices: TrajectoryNotice[] = [];
+  if (ephemeris.originator === SKETCH_ORIGINATOR) {
+    notices.push({
+      code: 'sketched',
+      severity: 'caution',
+      text: 'This path is a sketch by two-body motion, not a designed trajectory; replace it by an ephemeris when there is one.',
+    });
+  }
   if (centerName === '') {
     notices.push({
       code: 'centerAssumed',

@@ -4,6 +4,7 @@ import { MAX_MINIMA, type PathSurvey } from './closestApproach.ts';
 import { counted, duration, shown } from './format.ts';
 import { NEAR_PLANET_RADII, type NodeReport, velocitiesInconsistent } from './nodeChecks.ts';
 import { type PathPiece, safeUtc } from './pieces.ts';
+import { SKETCH_ORIGINATOR } from './sketchCommon.ts';
 import type { ClosestApproach, TrajectoryNotice, TrajectorySummary } from './types.ts';
 
 /** Nothing in orbit about or passing an outer planet is faster; a larger speed betrays metres. */
@@ -126,7 +127,8 @@ export function nodeNotices(planet: Planet, report: NodeReport): TrajectoryNotic
 export function sentences(planet: Planet, summary: Omit<TrajectorySummary, 'reading'>): string[] {
   const out: string[] = [];
   const by = summary.originator === '' ? '' : ` by ${summary.originator}`;
-  const created = summary.creationDate === '' ? '' : `, created ${summary.creationDate}`;
+  const dated = summary.creationDate !== '' && summary.originator !== SKETCH_ORIGINATOR;
+  const created = dated ? `, created ${summary.creationDate}` : '';
   const object = summary.objectName === '' ? 'an unnamed object' : summary.objectName;
   out.push(`The file is ${FORMAT_WORDS[summary.format](summary.formatVersion)}${by}${created}: ${object}.`);
   const count = summary.segments.length;
