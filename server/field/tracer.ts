@@ -105,7 +105,9 @@ export class SegmentTracer {
   /** Point of the last segment at arc length s from its backward mirror point, shape (3,); returns |B|, nT. */
   segmentPointInto(s: number, out: Float64Array): number {
     const fromPoint = s - this.backwardLength;
-    return fromPoint >= 0 ? this.forward.evaluateInto(fromPoint, out) : this.backward.evaluateInto(-fromPoint, out);
+    // A leg that was not traced holds nothing of this segment, not even its common point.
+    const onForward = this.backwardLength === 0 || (fromPoint > 0 && this.forwardLength > 0);
+    return onForward ? this.forward.evaluateInto(fromPoint, out) : this.backward.evaluateInto(-fromPoint, out);
   }
 
   private leg(line: FieldLine, x: number, y: number, z: number, direction: 1 | -1, out: LineSegment): boolean {
