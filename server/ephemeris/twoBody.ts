@@ -62,15 +62,17 @@ export function propagateInto(
     durationS -= period * Math.round(durationS / period);
   }
   // Kepler's equation t(s) rises monotonically (dt/ds = r > 0): Newton inside a bracket that grows until it holds the root.
-  let s = durationS / r0;
-  let low = Math.min(0, s);
-  let high = Math.max(0, s);
+  // On hyperbolas t grows like sinh, so the bracket starts within one scale length and doubles from there.
+  const scale = Math.min(Math.abs(durationS) / r0, 1 / Math.sqrt(Math.abs(alpha)));
+  let low = durationS < 0 ? -scale : 0;
+  let high = durationS < 0 ? 0 : scale;
   const time = (value: number): number => {
     stumpffInto(alpha * value * value, c);
     return value * (r0 * c[1] + value * (u * c[2] + value * gmKm3S2 * c[3]));
   };
   for (let i = 0; i < MAX_ITERATIONS && time(high) < durationS; i++) high = 2 * high + 1e-12;
   for (let i = 0; i < MAX_ITERATIONS && time(low) > durationS; i++) low = 2 * low - 1e-12;
+  let s = 0.5 * (low + high);
   let converged = false;
   for (let i = 0; i < 4 * MAX_ITERATIONS; i++) {
     const error = time(s) - durationS;
