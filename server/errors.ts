@@ -34,6 +34,11 @@ export const ERROR_CODES = {
     title: 'Unknown material',
     help: 'The material id is neither in the built-in list (GET /api/materials) nor a chemical symbol that list contains.',
   },
+  MIXTURE_INVALID: {
+    status: 422,
+    title: 'Mixture refused',
+    help: 'A material of your own needs a density above 0 to 25 g/cm³ and mass fractions of known elements, each in (0, 1], that sum to one within 1e-6.',
+  },
   // --- time, ephemeris
   EPOCH_UNREADABLE: {
     status: 422,
