@@ -3,8 +3,8 @@ import { AppError, type ErrorPlace } from '../errors.ts';
 import { epochOfBytes, whyNoEpoch } from '../time/index.ts';
 import { type CsvColumns, type CsvPlan, planColumns } from './csvColumns.ts';
 import { decimalOfBytes } from './decimal.ts';
-import { LineReader, textOf } from './lines.ts';
-import { CommentList, type NodeEphemeris, NodeRows } from './nodes.ts';
+import { expectedRows, LineReader, textOf } from './lines.ts';
+import { CommentList, MAX_STATES, type NodeEphemeris, NodeRows } from './nodes.ts';
 import type { ByteSource } from './source.ts';
 
 const QUOTE = 0x22;
@@ -114,7 +114,9 @@ function readRows(
       }
       state[i] = value * plan.stateFactors[i];
     }
-    if (rows.count === 0) rows.reserve(Math.ceil(lines.remainingBytes / (lines.end - lines.start + 1)) + 2);
+    if (rows.count === 0) rows.expect(expectedRows(lines));
+    if (rows.count >= MAX_STATES)
+      throw csvInvalid(line, '', `the table holds more than ${MAX_STATES} rows; thin it out`);
     rows.push(epochTdbS, state);
   }
   if (rows.count < 2) {

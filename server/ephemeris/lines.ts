@@ -1,4 +1,5 @@
 import { AppError, type ErrorCode } from '../errors.ts';
+import { MAX_STATES } from './nodes.ts';
 import type { ByteSource } from './source.ts';
 
 const CHUNK_BYTES = 1 << 20;
@@ -89,4 +90,9 @@ const decoder = new TextDecoder('utf-8');
 
 export function textOf(bytes: Uint8Array, start: number, end: number): string {
   return decoder.decode(bytes.subarray(start, end));
+}
+
+/** Rows to expect when the rest of the source looks like the current line, bounded by what a file may hold. */
+export function expectedRows(lines: LineReader): number {
+  return Math.min(MAX_STATES, Math.ceil(lines.remainingBytes / (lines.end - lines.start + 1)) + 2);
 }

@@ -50,13 +50,22 @@ export interface NodeEphemeris {
   readonly segments: readonly NodeSegment[];
 }
 
-/** Rows of states that grow by doubling, or at once when the number is known. */
+/** States that one file may hold: 230 MB of numbers, four years at a state every half minute. */
+export const MAX_STATES = 4_000_000;
+
+/** Rows of states that grow by doubling. */
 export class NodeRows {
   count = 0;
   private epochs = new Float64Array(0);
   private values = new Float64Array(0);
+  private expected = 0;
 
-  reserve(rows: number): void {
+  /** How many rows will probably come, so that doubling does not overshoot. */
+  expect(rows: number): void {
+    this.expected = rows;
+  }
+
+  private reserve(rows: number): void {
     if (rows <= this.epochs.length) return;
     const epochs = new Float64Array(rows);
     epochs.set(this.epochs.subarray(0, this.count));
@@ -68,9 +77,13 @@ export class NodeRows {
 
   /** @param state - first six values are taken */
   push(epochTdbS: number, state: Float64Array): void {
-    if (this.count === this.epochs.length) this.reserve(Math.max(64, 2 * this.count));
-    this.epochs[this.count] = epochTdbS;
-    const at = this.count * 6;
+    const { count } = this;
+    if (count === this.epochs.length) {
+      const doubled = Math.max(64, 2 * count);
+      this.reserve(this.expected > count && this.expected < doubled ? this.expected : doubled);
+    }
+    this.epochs[count] = epochTdbS;
+    const at = count * 6;
     for (let i = 0; i < 6; i++) this.values[at + i] = state[i];
     this.count++;
   }

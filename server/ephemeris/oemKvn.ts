@@ -1,7 +1,7 @@
 import { AppError } from '../errors.ts';
 import { epochOfBytes, type TimeScale, whyNoEpoch } from '../time/index.ts';
 import { decimalOfBytes } from './decimal.ts';
-import { LineReader, textOf } from './lines.ts';
+import { expectedRows, LineReader, textOf } from './lines.ts';
 import { HeaderBuilder, MetadataBuilder, type OemHeader, oemInvalid } from './metadata.ts';
 import type { NodeEphemeris, NodeSegment } from './nodes.ts';
 import { SegmentRows } from './segmentRows.ts';
@@ -95,7 +95,7 @@ class KvnReader {
       );
     }
     // The first line of a block tells how many more of its length may follow.
-    if (rows.rows.count === 0) rows.rows.reserve(Math.ceil(lines.remainingBytes / (lines.end - lines.start + 1)) + 2);
+    if (rows.rows.count === 0) rows.rows.expect(expectedRows(lines));
     rows.push(epochTdbS, state, count, lines.number);
   }
 
@@ -221,7 +221,7 @@ class KvnReader {
       );
     }
     this.scale = span.metadata.timeSystem;
-    this.rows = new SegmentRows(span);
+    this.rows = new SegmentRows(span, this.segments);
     this.section = 'states';
   }
 

@@ -214,7 +214,7 @@ class XmlReader {
       );
     }
     this.scale = span.metadata.timeSystem;
-    this.rows = new SegmentRows(span);
+    this.rows = new SegmentRows(span, this.segments);
   }
 
   private field(name: string, text: string, line: number): void {

@@ -1,5 +1,5 @@
 import { oemInvalid, type SegmentSpan, SPAN_ROUNDING_S } from './metadata.ts';
-import { NodeRows, type NodeSegment } from './nodes.ts';
+import { MAX_STATES, NodeRows, type NodeSegment } from './nodes.ts';
 
 /** States of one block of a message, checked row by row against each other and against START_TIME and STOP_TIME. */
 export class SegmentRows {
@@ -9,8 +9,12 @@ export class SegmentRows {
   private accelerationCount = 0;
   private lastCovarianceTdbS = Number.NEGATIVE_INFINITY;
 
-  constructor(span: SegmentSpan) {
+  private readonly earlierStates: number;
+
+  /** @param earlier - the blocks before this one */
+  constructor(span: SegmentSpan, earlier: readonly NodeSegment[]) {
     this.span = span;
+    this.earlierStates = earlier.reduce((sum, segment) => sum + segment.epochsTdbS.length, 0);
   }
 
   /** @param numberCount - 6, or 9 with accelerations */
@@ -26,6 +30,9 @@ export class SegmentRows {
     }
     if (epochTdbS > this.span.stopTdbS + SPAN_ROUNDING_S) {
       throw oemInvalid(line, 'epoch', 'lies after the STOP_TIME of its block');
+    }
+    if (this.rows.count + this.earlierStates >= MAX_STATES) {
+      throw oemInvalid(line, '', `the file holds more than ${MAX_STATES} states; thin it out`);
     }
     if (numberCount > 6) this.accelerationCount++;
     this.rows.push(epochTdbS, state);
