@@ -47,8 +47,7 @@ export interface AssessOptions {
  */
 export function assess(input: AssessmentInput, options: AssessOptions = {}): AssessmentResult {
   checkAssessmentInput(input);
-  const { draws, seed } = input.sampling;
-  const { belts, spectra, cases: preparedCases, notices: sourceNotices } = prepareCases(input);
+  const { numbers, spectra, cases: preparedCases, notices: sourceNotices } = prepareCases(input);
   const parts = input.parts.map((part) => preparePart(part, input.study.requiredRdm));
   const responses = uniqueResponses(input);
   const optionRows = resultOptions(input);
@@ -66,7 +65,7 @@ export function assess(input: AssessmentInput, options: AssessOptions = {}): Ass
     for (const row of rows.margins) margins.push(row);
     comparison.push(...rows.comparison);
     sensitivity.push(...rows.sensitivity);
-    const depth = depthRows(prepared, input.doseDepthTables, draws);
+    const depth = depthRows(prepared, input.doseDepthTables, numbers.draws);
     doseDepth.push(...depth.rows);
     addNotices(notices, depth.notices);
     options.onProgress?.((index + 1) / preparedCases.length);
@@ -97,9 +96,7 @@ export function assess(input: AssessmentInput, options: AssessOptions = {}): Ass
       kind: doseKradSi !== undefined ? 'dose' : table !== undefined ? 'doseDepth' : 'fluence',
       example: fluence?.example ?? false,
     })),
-    fluence: input.trajectories.flatMap(({ trajectoryId }) =>
-      fluenceRows(spectra.get(trajectoryId)!, belts, seed, draws),
-    ),
+    fluence: input.trajectories.flatMap(({ trajectoryId }) => fluenceRows(spectra.get(trajectoryId)!, numbers)),
     doseDepth,
     shieldDose,
     margins,

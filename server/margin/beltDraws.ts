@@ -25,7 +25,7 @@ export interface BeltDraws {
 }
 
 /** Spread factors of the belts of one planet: shared by all cases, trajectories and options. */
-export function drawBelts(planet: PlanetId, seed: number, draws: number): BeltDraws {
+function drawBelts(planet: PlanetId, seed: number, draws: number): BeltDraws {
   const factors = new Float64Array(draws * FACTORS_PER_DRAW);
   const fieldUniform = new Float64Array(draws);
   const shard = SHARD_BELTS + PLANET_ORDER.indexOf(planet);
@@ -37,24 +37,55 @@ export function drawBelts(planet: PlanetId, seed: number, draws: number): BeltDr
   return { draws, factors, fieldUniform };
 }
 
-/** Time variation of each state of the belts, standard normal, index draw · (2 stateCount) + 2 state + species. */
-export function drawStates(seed: number, draws: number, stateCount: number): Float64Array {
-  const out = new Float64Array(draws * stateCount * 2);
-  for (let draw = 0; draw < draws; draw++) {
-    const stream = randomStream(seed, SHARD_STATES, draw);
-    for (let k = 0; k < stateCount * 2; k++) out[draw * stateCount * 2 + k] = stream.normal();
-  }
-  return out;
+/**
+ * A table of random numbers with one row a draw, the first `columns` of the stream of that draw. Short rows are kept,
+ * because every case asks for the same ones; long rows (many repetitions) are made as they are asked for.
+ */
+export interface DrawRows {
+  /** Fills `out` with the row of a draw. */
+  rowInto(draw: number, out: Float64Array): Float64Array;
 }
 
-/** Rotation phase of each flight, uniform on [0, 1), index draw · flightCount + flight. */
-export function drawPhases(seed: number, draws: number, flightCount: number): Float64Array {
-  const out = new Float64Array(draws * flightCount);
+const KEPT_COLUMNS = 8;
+
+function drawRows(seed: number, shard: number, draws: number, kind: 'normal' | 'uniform'): DrawRows {
+  const kept = new Float64Array(draws * KEPT_COLUMNS);
   for (let draw = 0; draw < draws; draw++) {
-    const stream = randomStream(seed, SHARD_PHASES, draw);
-    for (let k = 0; k < flightCount; k++) out[draw * flightCount + k] = stream.uniform();
+    const stream = randomStream(seed, shard, draw);
+    for (let k = 0; k < KEPT_COLUMNS; k++) kept[draw * KEPT_COLUMNS + k] = stream[kind]();
   }
-  return out;
+  return {
+    rowInto(draw, out) {
+      if (out.length <= KEPT_COLUMNS) {
+        for (let k = 0; k < out.length; k++) out[k] = kept[draw * KEPT_COLUMNS + k];
+      } else {
+        const stream = randomStream(seed, shard, draw);
+        for (let k = 0; k < out.length; k++) out[k] = stream[kind]();
+      }
+      return out;
+    },
+  };
+}
+
+/** Everything random in an assessment but the statistical errors of responses. */
+export interface RandomNumbers {
+  readonly draws: number;
+  readonly belts: Readonly<Partial<Record<PlanetId, BeltDraws>>>;
+  /** Standard normal: time variation of the electrons, then of the protons, of each state of the belts. */
+  readonly states: DrawRows;
+  /** Uniform on [0, 1): the phase that flights share, then the phase of each flight. */
+  readonly phases: DrawRows;
+}
+
+export function randomNumbers(planets: Iterable<PlanetId>, seed: number, draws: number): RandomNumbers {
+  const belts: Partial<Record<PlanetId, BeltDraws>> = {};
+  for (const planet of planets) belts[planet] ??= drawBelts(planet, seed, draws);
+  return {
+    draws,
+    belts,
+    states: drawRows(seed, SHARD_STATES, draws, 'normal'),
+    phases: drawRows(seed, SHARD_PHASES, draws, 'uniform'),
+  };
 }
 
 /** Statistical error of one response, standard normal, one a draw, the same in every case. */

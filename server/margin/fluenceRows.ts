@@ -1,9 +1,8 @@
 /** Mission fluence of one trajectory, with the band of the drawn belts at a few thresholds. */
-import type { PlanetId } from '../constants/planets.ts';
 import { SPECIES } from '../dose/index.ts';
 import { EVIDENCE_REGIONS, type EvidenceRegion } from '../flux/types.ts';
 import { binIntegralsInto, edgesMeV, type Species } from '../numeric/spectrumGrid.ts';
-import type { BeltDraws } from './beltDraws.ts';
+import type { RandomNumbers } from './beltDraws.ts';
 import { makeCaseSampler, type SampledColumn } from './caseSampler.ts';
 import { CURVE_DRAWS } from './depthRows.ts';
 import { nodeWeights, referenceSpectrum } from './nodeWeights.ts';
@@ -21,14 +20,9 @@ const THRESHOLDS_MEV: Readonly<Record<Species, readonly number[]>> = {
 const EVIDENCE_FROM_MEV = 1;
 
 /** Two rows, electrons and protons, of one pass of a trajectory. */
-export function fluenceRows(
-  spectra: TrajectorySpectra,
-  belts: Readonly<Partial<Record<PlanetId, BeltDraws>>>,
-  seed: number,
-  draws: number,
-): FluenceRow[] {
+export function fluenceRows(spectra: TrajectorySpectra, numbers: RandomNumbers): FluenceRow[] {
   const { trajectory } = spectra;
-  const sampler = makeCaseSampler([{ trajectory, repetitions: 1 }], belts, seed);
+  const sampler = makeCaseSampler([{ trajectory, repetitions: 1 }], numbers);
   const references = {
     electron: referenceSpectrum('electron', spectra.referenceEdges.electron),
     proton: referenceSpectrum('proton', spectra.referenceEdges.proton),
@@ -54,7 +48,7 @@ export function fluenceRows(
         constantGy: 0,
       };
     });
-    const { doses: counts } = sampler.sample(columns, Math.min(draws, CURVE_DRAWS));
+    const { doses: counts } = sampler.sample(columns, Math.min(numbers.draws, CURVE_DRAWS));
     for (const values of counts) values.sort();
     return {
       trajectoryId: trajectory.trajectoryId,

@@ -37,12 +37,19 @@ export function marginRows(
       return refused(part, option, placeId, site.dose.refusedBySource ? 'outsideValidity' : 'noResponse');
     }
     const capability = row.capabilityKradSi;
-    const margin = (doseKradSi: number): number | null => (doseKradSi > 0 ? capability / doseKradSi : null);
-    const achieved = {
-      achievedRdm: margin(band.p50),
-      achievedRdmP95: margin(band.p95),
-      achievedRdmAtVerdict: margin(doseAtVerdictKradSi),
-    };
+    const achievedRdm = marginOf(capability, band.p50);
+    const achievedRdmP95 = marginOf(capability, band.p95);
+    const achievedRdmAtVerdict = marginOf(capability, doseAtVerdictKradSi);
+    const { verdict, reason } = verdictOf({
+      requiredRdm: row.requiredRdm,
+      achievedRdmAtVerdict,
+      achievedRdmP50: achievedRdm,
+      achievedRdmP95,
+      verdictPercentile: study.verdictPercentile,
+      extrapolatedFraction: extrapolatedFraction ?? 0,
+      extrapolatedShareLimit: study.extrapolatedShareLimit,
+      geometry: site.geometry,
+    });
     const doses = site.dose.samples.jointGy;
     const otherKrad = gyToKrad(site.dose.other.totalGy);
     return {
@@ -55,21 +62,20 @@ export function marginRows(
       doseP95KradSi: band.p95,
       doseAtVerdictKradSi,
       requiredRdm: row.requiredRdm,
-      ...achieved,
+      achievedRdm,
+      achievedRdmP95,
+      achievedRdmAtVerdict,
       probabilityAboveDose: probabilityAbove(doses, part.capabilityPointsKradSi, 1, otherKrad),
       confidence: probabilityAbove(doses, part.capabilityPointsKradSi, row.requiredRdm, otherKrad),
-      ...verdictOf({
-        requiredRdm: row.requiredRdm,
-        achievedRdmAtVerdict: achieved.achievedRdmAtVerdict,
-        achievedRdmP50: achieved.achievedRdm,
-        achievedRdmP95: achieved.achievedRdmP95,
-        verdictPercentile: study.verdictPercentile,
-        extrapolatedFraction: extrapolatedFraction ?? 0,
-        extrapolatedShareLimit: study.extrapolatedShareLimit,
-        geometry: site.geometry,
-      }),
+      verdict,
+      reason,
     };
   });
+}
+
+/** Capability over dose; null where there is no dose, which any capability stands. */
+function marginOf(capabilityKradSi: number, doseKradSi: number): number | null {
+  return doseKradSi > 0 ? capabilityKradSi / doseKradSi : null;
 }
 
 function refused(part: PreparedPart, option: OptionDoses, placeId: string, reason: VerdictReason): MarginRow {

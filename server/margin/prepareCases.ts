@@ -1,7 +1,6 @@
 /** From trajectories and legs to cases that any shield can be folded with. */
-import type { PlanetId } from '../constants/planets.ts';
 import { binHistory } from '../dose/index.ts';
-import { type BeltDraws, drawBelts } from './beltDraws.ts';
+import { type RandomNumbers, randomNumbers } from './beltDraws.ts';
 import type { PreparedCase } from './caseRows.ts';
 import { makeCaseSampler } from './caseSampler.ts';
 import type { AssessmentInput } from './input.ts';
@@ -13,7 +12,7 @@ import type { ResultNotice } from './result.ts';
 export type CaseInput = Pick<AssessmentInput, 'trajectories' | 'cases' | 'otherSources' | 'sampling'>;
 
 export interface PreparedCases {
-  readonly belts: Readonly<Partial<Record<PlanetId, BeltDraws>>>;
+  readonly numbers: RandomNumbers;
   /** By trajectory id. */
   readonly spectra: ReadonlyMap<string, TrajectorySpectra>;
   readonly cases: readonly PreparedCase[];
@@ -23,8 +22,11 @@ export interface PreparedCases {
 /** Everything of the left factor, made once for all shields. The input has been checked. */
 export function prepareCases(input: CaseInput): PreparedCases {
   const { draws, seed } = input.sampling;
-  const belts: Partial<Record<PlanetId, BeltDraws>> = {};
-  for (const { fluence } of input.trajectories) belts[fluence.planet] ??= drawBelts(fluence.planet, seed, draws);
+  const numbers = randomNumbers(
+    input.trajectories.map(({ fluence }) => fluence.planet),
+    seed,
+    draws,
+  );
   const spectra = new Map(input.trajectories.map((one) => [one.trajectoryId, trajectorySpectra(one)]));
   const histories = new Map(
     input.trajectories.map(({ trajectoryId, fluence }) => [
@@ -42,19 +44,19 @@ export function prepareCases(input: CaseInput): PreparedCases {
     return {
       caseId,
       legs,
-      sampler: makeCaseSampler(legs, belts, seed),
+      sampler: makeCaseSampler(legs, numbers),
       reference: {
         electron: referenceSpectrum('electron', referenceOf(legs, 'electron')),
         proton: referenceSpectrum('proton', referenceOf(legs, 'proton')),
       },
       belts: [...new Set(legs.map(({ trajectory }) => trajectory.fluence.planet))].flatMap(
-        (planet) => belts[planet] ?? [],
+        (planet) => numbers.belts[planet] ?? [],
       ),
       histories: legs.map(({ trajectory }) => histories.get(trajectory.trajectoryId) ?? null),
       sources,
     };
   });
-  return { belts, spectra, cases, notices };
+  return { numbers, spectra, cases, notices };
 }
 
 /** Mean over all variants of all legs: positive wherever a draw can be. */

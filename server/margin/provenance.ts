@@ -1,5 +1,5 @@
 /** What made a result: the hash of every input, and the hash of the result itself. */
-import { contentHash } from '../canonical.ts';
+import { contentHash, sha256Hex } from '../canonical.ts';
 import type { AssessmentInput } from './input.ts';
 import type { AssessmentResult, ResultProvenance } from './result.ts';
 
@@ -17,18 +17,42 @@ const NOT_CONTENT = new Set([
   'resultSha256',
 ]);
 
-/** The value without record ids and times, at every depth. */
+/**
+ * The value without record ids and times, at every depth, its keys in the order of RFC 8785.
+ *
+ * A copy with sorted keys is written by the built-in serialiser exactly as RFC 8785 asks (its numbers and strings are
+ * those of ECMAScript), many times faster than sorting on the way; a test holds the two against each other.
+ */
 function content(value: unknown): unknown {
   if (Array.isArray(value)) return value.map(content);
   if (value === null || typeof value !== 'object') return value;
   const out: Record<string, unknown> = {};
-  for (const [key, entry] of Object.entries(value)) if (!NOT_CONTENT.has(key)) out[key] = content(entry);
+  for (const key of contentKeys(value)) out[key] = content((value as Record<string, unknown>)[key]);
   return out;
+}
+
+/** Rows of one kind have their keys in one order: it is sorted once. */
+const keyOrders = new Map<string, readonly string[]>();
+function contentKeys(value: object): readonly string[] {
+  const keys = Object.keys(value);
+  const signature = keys.join('\n');
+  let order = keyOrders.get(signature);
+  if (order === undefined) {
+    order = keys.filter((key) => !NOT_CONTENT.has(key)).sort();
+    if (keyOrders.size > 500) keyOrders.clear();
+    keyOrders.set(signature, order);
+  }
+  return order;
+}
+
+/** What the hash of a result is taken over. */
+export function hashedText(result: AssessmentResult): string {
+  return JSON.stringify(content(result));
 }
 
 /** SHA-256 over the canonical JSON of a result without record ids and times; rows stand for what they name by order. */
 export function resultHash(result: AssessmentResult): string {
-  return contentHash(content(result));
+  return sha256Hex(hashedText(result));
 }
 
 /** Provenance of a result, its own hash still empty. */

@@ -4,6 +4,9 @@ import { FACTORS_PER_DRAW, FACTORS_PER_SPECIES } from './beltDraws.ts';
 import type { DrawRecord } from './caseSampler.ts';
 import type { UncertaintyShare } from './result.ts';
 
+/** Shares are read to two digits; this many draws give them that. */
+const SHARE_DRAWS = 2000;
+
 /**
  * Shares of the variance of ln dose by source.
  *
@@ -23,7 +26,7 @@ export function spreadSources(
 ): UncertaintyShare[] {
   const y: number[] = [];
   const at: number[] = [];
-  for (let draw = 0; draw < dosesGy.length; draw++) {
+  for (let draw = 0; draw < Math.min(dosesGy.length, SHARE_DRAWS); draw++) {
     if (dosesGy[draw] > 0) {
       y.push(Math.log(dosesGy[draw]));
       at.push(draw);

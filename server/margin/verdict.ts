@@ -28,16 +28,16 @@ export interface VerdictInput {
  * Only `meets` is a pass.
  */
 export function verdictOf(input: VerdictInput): { readonly verdict: Verdict; readonly reason: VerdictReason } {
-  const meets = (margin: number | null): boolean => margin === null || margin >= input.requiredRdm;
+  const { requiredRdm } = input;
   const extrapolated = input.extrapolatedFraction > input.extrapolatedShareLimit;
-  const metAt95 = meets(input.achievedRdmP95);
-  if (meets(input.achievedRdmAtVerdict)) {
+  const metAt95 = meets(input.achievedRdmP95, requiredRdm);
+  if (meets(input.achievedRdmAtVerdict, requiredRdm)) {
     if (input.verdictPercentile >= 95 || metAt95 || !extrapolated) {
       return { verdict: 'meets', reason: extrapolated ? 'marginMetDespiteExtrapolation' : 'marginMet' };
     }
     return { verdict: 'notDemonstrated', reason: 'metOnlyBelow95thPercentile' };
   }
-  if (extrapolated && !metAt95 && meets(input.achievedRdmP50)) {
+  if (extrapolated && !metAt95 && meets(input.achievedRdmP50, requiredRdm)) {
     return { verdict: 'notDemonstrated', reason: 'metOnlyBelow95thPercentile' };
   }
   if (input.achievedRdmAtVerdict !== null && input.achievedRdmAtVerdict < 1) {
@@ -46,6 +46,10 @@ export function verdictOf(input: VerdictInput): { readonly verdict: Verdict; rea
   return input.geometry === 'sectors' || input.geometry === 'box'
     ? { verdict: 'doesNotComply', reason: 'belowRequiredWithSectors' }
     : { verdict: 'needsSectorAnalysis', reason: 'belowRequiredBehindSimpleShield' };
+}
+
+function meets(margin: number | null, requiredRdm: number): boolean {
+  return margin === null || margin >= requiredRdm;
 }
 
 export const VERDICT_REASONS: Readonly<Record<VerdictReason, string>> = {

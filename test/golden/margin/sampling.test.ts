@@ -1,5 +1,5 @@
 import { describe, expect, it } from 'vitest';
-import { drawBelts } from '../../../server/margin/beltDraws.ts';
+import { randomNumbers } from '../../../server/margin/beltDraws.ts';
 import { makeCaseSampler, type SampledColumn, TIME_SIGMA_DEX } from '../../../server/margin/caseSampler.ts';
 import { lotCapability, predictivePoints } from '../../../server/margin/lot.ts';
 import { nodeWeights, referenceSpectrum } from '../../../server/margin/nodeWeights.ts';
@@ -23,8 +23,9 @@ function run(
 ) {
   const trajectory = toyTrajectory(toy, options);
   const spectra = trajectorySpectra(trajectory);
-  const belts = drawBelts('uranus', seed, DRAWS);
-  const sampler = makeCaseSampler([{ trajectory, repetitions }], { uranus: belts }, seed);
+  const numbers = randomNumbers(['uranus'], seed, DRAWS);
+  const belts = numbers.belts.uranus!;
+  const sampler = makeCaseSampler([{ trajectory, repetitions }], numbers);
   const column: SampledColumn = {
     weights: {
       electron: nodeWeights(

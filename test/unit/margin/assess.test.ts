@@ -1,8 +1,9 @@
 import { describe, expect, it } from 'vitest';
+import { canonicalJson } from '../../../server/canonical.ts';
 import { AppError } from '../../../server/errors.ts';
 import { assess } from '../../../server/margin/assess.ts';
 import type { AssessedOption, AssessedPlace, AssessmentInput } from '../../../server/margin/input.ts';
-import { resultHash } from '../../../server/margin/provenance.ts';
+import { hashedText, resultHash } from '../../../server/margin/provenance.ts';
 import type { AssessmentResult } from '../../../server/margin/result.ts';
 import { flatElectrons, toyInput, toyResponse, toyTrajectory, unitAboveOneMeV } from './toy.ts';
 
@@ -73,6 +74,13 @@ describe('assess', () => {
     const other = assess(toyInput({ sampling: { draws: 2000, seed: 8 } }));
     expect(other.provenance.resultSha256).not.toBe(first.provenance.resultSha256);
     expect(other.shieldDose[0].doseKradSi).toEqual(first.shieldDose[0].doseKradSi);
+  });
+
+  it('hashes the canonical form of RFC 8785', () => {
+    // Source: the reference serialiser of RFC 8785 from npm, over the same content.
+    const text = hashedText(assess(toyInput({ name: 'Größe "µ" \u2028 1e21' })));
+    expect(text).toBe(canonicalJson(JSON.parse(text)));
+    for (const id of ['caseId', 'optionId', 'partId', 'trajectoryId', 'resultSha256']) expect(text).not.toContain(id);
   });
 
   it('is plain JSON: nothing is lost on the wire', () => {
