@@ -45,10 +45,13 @@ export function peakDoseRate(history: BinnedHistory, response: ShieldResponse): 
     electron[bin] = response.electron.doseGyCm2[bin] + response.electron.bremsstrahlungGyCm2[bin];
   }
   const proton = response.proton.doseGyCm2;
+  const fromElectron = firstBin(electron);
+  const fromProton = firstBin(proton);
   let best = -1;
   let at = 0;
   for (let i = 0; i < history.epochTdbS.length; i++) {
-    const rate = rowDot(history.electronPerCm2S, i, electron) + rowDot(history.protonPerCm2S, i, proton);
+    const rate =
+      rowDot(history.electronPerCm2S, i, electron, fromElectron) + rowDot(history.protonPerCm2S, i, proton, fromProton);
     if (rate > best) {
       best = rate;
       at = i;
@@ -89,9 +92,11 @@ export function transmittedPeak(history: BinnedHistory, response: ShieldResponse
   const n = epochTdbS.length;
   const flux = new Float64Array(n);
   const cumulative = new Float64Array(n);
+  const { transmitted } = response.electron;
+  const from = firstBin(transmitted);
   let peak = 0;
   for (let i = 0; i < n; i++) {
-    flux[i] = rowDot(history.electronPerCm2S, i, response.electron.transmitted);
+    flux[i] = rowDot(history.electronPerCm2S, i, transmitted, from);
     if (flux[i] > flux[peak]) peak = i;
     if (i > 0) cumulative[i] = cumulative[i - 1] + 0.5 * (flux[i] + flux[i - 1]) * (epochTdbS[i] - epochTdbS[i - 1]);
   }
@@ -122,9 +127,23 @@ export function transmittedPeak(history: BinnedHistory, response: ShieldResponse
   };
 }
 
-function rowDot(rows: Float64Array, row: number, weights: Float64Array): number {
-  const base = row * weights.length;
-  let sum = 0;
-  for (let i = 0; i < weights.length; i++) sum += rows[base + i] * weights[i];
-  return sum;
+/** Σ of one row of samples with weights, from the first bin that counts. */
+function rowDot(rows: Float64Array, row: number, weights: Float64Array, from: number): number {
+  const n = weights.length;
+  const base = row * n;
+  let a = 0;
+  let b = 0;
+  let i = from;
+  for (; i + 1 < n; i += 2) {
+    a += rows[base + i] * weights[i];
+    b += rows[base + i + 1] * weights[i + 1];
+  }
+  if (i < n) a += rows[base + i] * weights[i];
+  return a + b;
+}
+
+/** First bin of a response that is not zero: shields stop everything below it. */
+function firstBin(weights: Float64Array): number {
+  const found = weights.findIndex((value) => value !== 0);
+  return found < 0 ? weights.length : found;
 }

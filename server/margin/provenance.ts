@@ -1,5 +1,6 @@
 /** What made a result: the hash of every input, and the hash of the result itself. */
-import { contentHash, sha256Hex } from '../canonical.ts';
+import { createHash } from 'node:crypto';
+import { contentHash } from '../canonical.ts';
 import type { AssessmentInput } from './input.ts';
 import type { AssessmentResult, ResultProvenance } from './result.ts';
 
@@ -45,14 +46,34 @@ function contentKeys(value: object): readonly string[] {
   return order;
 }
 
-/** What the hash of a result is taken over. */
-export function hashedText(result: AssessmentResult): string {
-  return JSON.stringify(content(result));
+/** Rows written at a time: a large trade has 100 000 margins, which need not stand in memory twice. */
+const ROWS_PER_PIECE = 1000;
+
+/** The text that the hash of a result is taken over, in pieces. */
+export function* hashedText(result: AssessmentResult): Generator<string> {
+  let separator = '{';
+  for (const key of contentKeys(result)) {
+    yield `${separator}${JSON.stringify(key)}:`;
+    separator = ',';
+    const value = result[key as keyof AssessmentResult];
+    if (!Array.isArray(value) || value.length <= ROWS_PER_PIECE) {
+      yield JSON.stringify(content(value));
+      continue;
+    }
+    for (let row = 0; row < value.length; row += ROWS_PER_PIECE) {
+      const piece = JSON.stringify(content(value.slice(row, row + ROWS_PER_PIECE)));
+      yield (row === 0 ? '[' : ',') + piece.slice(1, -1);
+    }
+    yield ']';
+  }
+  yield '}';
 }
 
 /** SHA-256 over the canonical JSON of a result without record ids and times; rows stand for what they name by order. */
 export function resultHash(result: AssessmentResult): string {
-  return sha256Hex(hashedText(result));
+  const hash = createHash('sha256');
+  for (const piece of hashedText(result)) hash.update(piece);
+  return hash.digest('hex');
 }
 
 /** Provenance of a result, its own hash still empty. */

@@ -78,7 +78,9 @@ describe('assess', () => {
 
   it('hashes the canonical form of RFC 8785', () => {
     // Source: the reference serialiser of RFC 8785 from npm, over the same content.
-    const text = hashedText(assess(toyInput({ name: 'Größe "µ" \u2028 1e21' })));
+    // Enough rows to be written in several pieces.
+    const parts = Array.from({ length: 1100 }, (_, i) => ({ ...toyInput().parts[0], partId: `p${i}` }));
+    const text = [...hashedText(assess(toyInput({ name: 'Größe "µ" \u2028 1e21', parts })))].join('');
     expect(text).toBe(canonicalJson(JSON.parse(text)));
     for (const id of ['caseId', 'optionId', 'partId', 'trajectoryId', 'resultSha256']) expect(text).not.toContain(id);
   });
