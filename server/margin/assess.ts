@@ -29,6 +29,7 @@ import {
 } from './result.ts';
 import { independentPhases } from './schedule.ts';
 import { summarise } from './summary.ts';
+import { plural } from './text.ts';
 import { VERDICT_REASONS } from './verdict.ts';
 
 export interface AssessOptions {
@@ -52,6 +53,12 @@ export function assess(input: AssessmentInput, options: AssessOptions = {}): Ass
   const responses = uniqueResponses(input);
   const optionRows = resultOptions(input);
   const notices: ResultNotice[] = [...(input.notices ?? []), ...sourceNotices];
+  for (const { response } of responses) {
+    addNotices(
+      notices,
+      response.notices.map((text) => ({ code: 'SHIELD_RESPONSE', severity: 'info', text })),
+    );
+  }
 
   const doseDepth: DoseDepthRow[] = [];
   const shieldDose: ShieldDoseRow[] = [];
@@ -112,7 +119,7 @@ export function assess(input: AssessmentInput, options: AssessOptions = {}): Ass
       verdictPercentile: input.study.verdictPercentile,
     }),
     verdictReasons: VERDICT_REASONS,
-    notices: [...STANDING_NOTICES, ...notices],
+    notices: [...STANDING_NOTICES, ...notices, ...chargingNotices(shieldDose)],
     provenance: provenanceOf(input),
   };
   return { ...result, provenance: { ...result.provenance, resultSha256: resultHash(result) } };
@@ -277,6 +284,19 @@ function phaseText(all: boolean, some: boolean, repeated: boolean): string {
   return some
     ? 'Repetitions of swept legs draw their own rotation phase; other legs share the offset of the rotation model. Repetitions within 30 days share the state of the belts.'
     : 'All repetitions meet the planet at the phase of the trajectory given and share the offset of the rotation model. Repetitions within 30 days share the state of the belts.';
+}
+
+/** Flags of the charging screen, counted: the rows hold the numbers. */
+function chargingNotices(rows: readonly ShieldDoseRow[]): ResultNotice[] {
+  const flagged = rows.filter(({ charging }) => charging?.currentFlag === 'above' || charging?.fluenceFlag === 'above');
+  if (flagged.length === 0) return [];
+  return [
+    {
+      code: 'CHARGING_FLAGGED',
+      severity: 'caution',
+      text: `Behind ${plural(flagged.length, 'shield')} of ${rows.length} the nominal electrons exceed a guideline figure for internal charging; a charging analysis is needed there.`,
+    },
+  ];
 }
 
 function addNotices(into: ResultNotice[], more: readonly ResultNotice[]): void {

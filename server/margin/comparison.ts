@@ -6,6 +6,7 @@ import type { AssessedPlace } from './input.ts';
 import { caseSpectra } from './nominal.ts';
 import { otherDoseAt } from './otherDose.ts';
 import { type ComparisonRow, type MarginRow, type SensitivityRow, VERDICTS, type Verdict } from './result.ts';
+import { THICKER_FACTOR, THINNER_FACTOR } from './scaleShield.ts';
 
 /** Rows of one case; `massKg` by option id. */
 export function comparisonRows(
@@ -108,8 +109,8 @@ export function sensitivityRow(
     caseId: row.caseId,
     optionId: row.optionId,
     placeId: row.placeId,
-    thinner10Pct: at(place.thinner10Pct, 0.9),
-    thicker10Pct: at(place.thicker10Pct, 1.1),
+    thinner10Pct: at(place.thinner10Pct, THINNER_FACTOR),
+    thicker10Pct: at(place.thicker10Pct, THICKER_FACTOR),
     phase: phases.length > 1 ? { lowestKradSi: Math.min(...phases), highestKradSi: Math.max(...phases) } : null,
     beltsDoubledKradSi: otherKrad + 2 * belts,
     beltsHalvedKradSi: otherKrad + 0.5 * belts,

@@ -15,6 +15,7 @@ export { formatPartsCsv, PART_COLUMNS, parsePartsCsv } from './partsCsv.ts';
 export { resultHash } from './provenance.ts';
 export type * from './result.ts';
 export { VERDICTS } from './result.ts';
+export { scaleShield, THICKER_FACTOR, THINNER_FACTOR } from './scaleShield.ts';
 export {
   solveThickness,
   type ThicknessCandidate,

@@ -80,6 +80,7 @@ export interface ResultCase {
     readonly trajectoryName: string;
     readonly repetitions: number;
   }[];
+  /** Groups of passes within 30 days, over all legs and repetitions. */
   readonly passCount: number;
   /** How the rotation phase of repetitions was treated, in one sentence. */
   readonly phaseOfRepetitions: string;

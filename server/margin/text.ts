@@ -1,14 +1,10 @@
-/** Numbers in sentences: three significant figures, never a bare zero for something small. */
+/** Numbers in sentences: three significant figures. */
 export function threeDigits(value: number): string {
-  if (value === 0) return '0';
-  const magnitude = Math.abs(value);
-  if (magnitude >= 1e5 || magnitude < 1e-3) return value.toExponential(2);
-  return value
-    .toPrecision(3)
-    .replace(/\.?e\+?(\d+)$/, (_, power: string) => `e${power}`)
-    .includes('e')
-    ? Number(value.toPrecision(3)).toFixed(0)
-    : value.toPrecision(3);
+  const rounded = Number(value.toPrecision(3));
+  const magnitude = Math.abs(rounded);
+  if (magnitude !== 0 && (magnitude >= 1e5 || magnitude < 1e-3)) return value.toExponential(2);
+  // From 1000 on, toPrecision would switch to an exponent.
+  return magnitude >= 1000 ? String(rounded) : value.toPrecision(3);
 }
 
 /** `1 part`, `3 parts`. */

@@ -298,6 +298,7 @@ describe('assess', () => {
     expect(row.charging!.peakCurrentPaPerCm2!).toBeCloseTo(0.2 * 99.98e6 * 1.602176634e-7, 4);
     expect(row.charging).toMatchObject({ currentFlag: 'above', fluenceFlag: 'above', currentLimitPaPerCm2: 0.1 });
     expect(row.charging!.fluence10hPerCm2!).toBeCloseTo(0.2 * 99.98e6 * 3600, -3);
+    expect(assess(input).notices.map(({ code }) => code)).toContain('CHARGING_FLAGGED');
     expect(row.damage!.electronMeVPerG).toBeGreaterThan(0);
     const [without] = assess(toyInput()).shieldDose;
     expect(without.peakDoseRate).toBeNull();
