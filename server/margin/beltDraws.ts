@@ -41,7 +41,7 @@ function drawBelts(planet: PlanetId, seed: number, draws: number): BeltDraws {
  * A table of random numbers with one row a draw, the first `columns` of the stream of that draw. Short rows are kept,
  * because every case asks for the same ones; long rows (many repetitions) are made as they are asked for.
  */
-export interface DrawRows {
+interface DrawRows {
   /** Fills `out` with the row of a draw. */
   rowInto(draw: number, out: Float64Array): Float64Array;
 }

@@ -33,7 +33,7 @@ export interface PreparedCase {
 }
 
 /** Drawn doses behind one response in one case: shared by every place that has this response. */
-export interface ShieldSamples {
+interface ShieldSamples {
   /** Ascending, Gy, belts only. */
   readonly jointGy: Float64Array;
   /** Ascending, Gy, belts only, every pass at its worst phase; null unless the study asks for it. */

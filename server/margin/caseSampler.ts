@@ -49,7 +49,7 @@ export interface DrawRecord {
   readonly state: Float64Array;
 }
 
-export interface CaseSamples {
+interface CaseSamples {
   /** Shape (draws,) for each column, Gy, order of the draws. */
   readonly doses: readonly Float64Array[];
   readonly record: DrawRecord;

@@ -4,11 +4,11 @@ import { AppError, type ErrorPlace } from '../errors.ts';
 import type { AssessmentInput } from './input.ts';
 import { checkParts } from './parts.ts';
 
-export const MIN_DRAWS = 100;
-export const MAX_DRAWS = 100_000;
-export const MIN_VERDICT_PERCENTILE = 50;
-export const MAX_VERDICT_PERCENTILE = 99.9;
-export const MAX_REPETITIONS = 10_000;
+const MIN_DRAWS = 100;
+const MAX_DRAWS = 100_000;
+const MIN_VERDICT_PERCENTILE = 50;
+const MAX_VERDICT_PERCENTILE = 99.9;
+const MAX_REPETITIONS = 10_000;
 
 /**
  * Refuses an assessment that names things it does not hold or numbers out of range.

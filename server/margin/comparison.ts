@@ -119,7 +119,7 @@ export function sensitivityRow(
 }
 
 /** Factor on all belt intensities at which a margin just meets its requirement; null when other sources use it up. */
-export function beltFactor(margin: MarginRow | null, otherKradSi: number): SensitivityRow['beltFactorAtRequirement'] {
+function beltFactor(margin: MarginRow | null, otherKradSi: number): SensitivityRow['beltFactorAtRequirement'] {
   if (margin === null || margin.capabilityKradSi === null || margin.doseAtVerdictKradSi === null) return null;
   const belts = margin.doseAtVerdictKradSi - otherKradSi;
   const room = margin.capabilityKradSi / margin.requiredRdm - otherKradSi;

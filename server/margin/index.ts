@@ -1,6 +1,13 @@
 export { type AssessOptions, assess } from './assess.ts';
 export { checkAssessmentInput } from './checkInput.ts';
-export { type AssessmentComparison, compareAssessments } from './compare.ts';
+export {
+  type AssessmentComparison,
+  compareAssessments,
+  type DoseChange,
+  type InputChange,
+  type SettingChange,
+  type VerdictChange,
+} from './compare.ts';
 export type {
   AssessedCase,
   AssessedOption,

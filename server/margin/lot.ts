@@ -42,7 +42,7 @@ export function zeroFailureSampleSize(confidence: number, probability: number): 
   return Math.ceil(Math.log1p(-confidence) / Math.log(probability) - 1e-12);
 }
 
-export interface LotCapability extends LotStatistics {
+interface LotCapability extends LotStatistics {
   /** exp(mean ln D − K_TL s), krad(Si). */
   readonly limitKradSi: number;
 }

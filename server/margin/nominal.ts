@@ -121,7 +121,7 @@ export function evidenceShares(legs: readonly NominalLeg[], response: ShieldResp
   >;
 }
 
-export interface PhaseDoses {
+interface PhaseDoses {
   /** Dose with every flight of every leg at the same offset, over the offsets of the legs; empty for a single one. */
   readonly byPhase: readonly { readonly offsetDeg: number; readonly doseGy: number }[];
   /** Every leg at its own worst offset; the offset named is that of the leg that brings most. */

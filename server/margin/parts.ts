@@ -7,9 +7,9 @@ import type { CapabilityBasis, ResultPart } from './result.ts';
 
 export const CAPABILITY_BASES: readonly CapabilityBasis[] = ['test', 'dataSheet', 'lot', 'similarity', 'estimate'];
 /** Largest lot of single failure doses a part may carry. */
-export const MAX_FAILURE_DOSES = 1000;
+const MAX_FAILURE_DOSES = 1000;
 /** Points of the predictive distribution of a lot that probabilities are averaged over. */
-export const PREDICTIVE_POINTS = 400;
+const PREDICTIVE_POINTS = 400;
 
 /** A part ready for the margin tables. */
 export interface PreparedPart {

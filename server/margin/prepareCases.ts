@@ -11,7 +11,7 @@ import type { ResultNotice } from './result.ts';
 
 export type CaseInput = Pick<AssessmentInput, 'trajectories' | 'cases' | 'otherSources' | 'sampling'>;
 
-export interface PreparedCases {
+interface PreparedCases {
   readonly numbers: RandomNumbers;
   /** By trajectory id. */
   readonly spectra: ReadonlyMap<string, TrajectorySpectra>;

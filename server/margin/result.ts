@@ -5,6 +5,7 @@
  * Two kinds of dose stand side by side. `doseKradSi` of a row is nominal: median belts, nominal field, and the nominal
  * rotation phase (the mean over phases where each repetition of a leg meets its own). `band` comes from sampling
  * belts, phase, field and statistical error together. Margins and verdicts use the band, shares use the nominal dose.
+ * The median of the band may lie above the nominal dose: where wide spreads add up over L, the sum gains on the median.
  */
 import type { PlanetId } from '../constants/planets.ts';
 import type { EnvironmentChoice } from '../fluence/types.ts';

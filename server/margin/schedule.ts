@@ -4,7 +4,7 @@ import { SECONDS_PER_DAY } from '../units.ts';
 import type { AssessedTrajectory } from './input.ts';
 
 /** Passes within this time share their time variation. */
-export const SHARED_STATE_S = 30 * SECONDS_PER_DAY;
+const SHARED_STATE_S = 30 * SECONDS_PER_DAY;
 
 export interface Leg {
   readonly trajectory: AssessedTrajectory;
@@ -12,7 +12,7 @@ export interface Leg {
 }
 
 /** One group of passes of one repetition of one leg. */
-export interface PassEvent {
+interface PassEvent {
   readonly leg: number;
   readonly group: number;
   /** Counts (leg, repetition) pairs: events of one flight share their rotation phase. */
@@ -21,7 +21,7 @@ export interface PassEvent {
   readonly state: number;
 }
 
-export interface Schedule {
+interface Schedule {
   readonly events: readonly PassEvent[];
   readonly flightCount: number;
   readonly stateCount: number;

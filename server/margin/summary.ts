@@ -12,7 +12,7 @@ import type {
 } from './result.ts';
 import { plural, threeDigits } from './text.ts';
 
-export interface SummaryInput {
+interface SummaryInput {
   readonly cases: readonly ResultCase[];
   readonly options: readonly ResultOption[];
   readonly parts: readonly ResultPart[];

@@ -13,9 +13,9 @@ import type { PhaseTreatment } from './result.ts';
 import { threeDigits } from './text.ts';
 
 /** The dose at the thickness returned lies within this of the target, relative. */
-export const DOSE_TOLERANCE_REL = 0.01;
+const DOSE_TOLERANCE_REL = 0.01;
 /** Aim inside the tolerance, so that rounding on the way to a drawing does not leave it. */
-const AIM_REL = 0.005;
+const AIM_REL = 0.5 * DOSE_TOLERANCE_REL;
 /** A bracket narrower than this cannot be told apart by responses that carry statistical error. */
 const NARROWEST_BRACKET = 1.001;
 const MAX_EVALUATIONS = 30;
