@@ -61,3 +61,13 @@ export function readDoseDepth(depthsMm: readonly number[], doses: readonly numbe
   const fraction = Math.log(depthMm / depthsMm[low]) / Math.log(depthsMm[high] / depthsMm[low]);
   return doses[low] * (doses[high] / doses[low]) ** fraction;
 }
+
+/** The rows of a table between two depths, ends included: a curve need not show all that was computed. */
+export function depthsWithin(table: DoseDepthTable, fromMm: number, toMm: number): DoseDepthTable {
+  const kept = table.depthsMm.flatMap((depthMm, i) => (depthMm >= fromMm && depthMm <= toMm ? [i] : []));
+  return {
+    ...table,
+    depthsMm: kept.map((i) => table.depthsMm[i]),
+    responses: kept.map((i) => table.responses[i]),
+  };
+}

@@ -1,5 +1,5 @@
-export { type DamageDose, foldDamage, NEUTRON_1MEV_NIEL_MEV_CM2_PER_G } from './damage.ts';
-export { type DoseDepthCurve, doseDepthCurve, readDoseDepth } from './doseDepth.ts';
+export { type DamageDose, foldDamage } from './damage.ts';
+export { type DoseDepthCurve, depthsWithin, doseDepthCurve, readDoseDepth } from './doseDepth.ts';
 export { dot, foldDose, foldTransmittedElectrons } from './fold.ts';
 export {
   type BinnedHistory,

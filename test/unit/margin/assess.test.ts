@@ -181,6 +181,36 @@ describe('assess', () => {
     expect(result.summary.lightestMeetingOptionId).toBeNull();
   });
 
+  it('states a flight that never meets the belts as no dose, which any part stands', () => {
+    const result = assess(toyInput({ trajectories: [toyTrajectory({ groupDays: [], fluence: flatElectrons })] }));
+    expect(result.shieldDose[0].doseKradSi!.total).toBe(0);
+    expect(result.shieldDose[0].band).toEqual({ p05: 0, p50: 0, p95: 0 });
+    expect(result.margins[0]).toMatchObject({ verdict: 'meets', achievedRdm: null, confidence: 1 });
+    expect(result.summary.lowestMargin).toBeNull();
+    expect(JSON.stringify(result)).not.toContain('NaN');
+  });
+
+  it('adds legs at both planets, each with belts of its own', () => {
+    const uranus = toyTrajectory({ name: 'U', sharedSigmaDex: 0.5, fluence: flatElectrons });
+    const other = toyTrajectory({ name: 'N', sharedSigmaDex: 0.5, fluence: flatElectrons }, { trajectoryId: 't2' });
+    const neptune = { ...other, fluence: { ...other.fluence, planet: 'neptune' as const } };
+    const both = (planets: AssessmentInput['trajectories']): AssessmentResult =>
+      assess(
+        toyInput({
+          trajectories: planets,
+          cases: [
+            { caseId: 'c', name: 'Both', legs: planets.map(({ trajectoryId }) => ({ trajectoryId, repetitions: 1 })) },
+          ],
+        }),
+      );
+    const apart = both([uranus, neptune]);
+    const together = both([uranus, { ...other }]);
+    expect(apart.cases[0].planets).toEqual(['uranus', 'neptune']);
+    expect(apart.shieldDose[0].doseKradSi).toEqual(together.shieldDose[0].doseKradSi);
+    // Independent belts even each other out, belts of one planet do not.
+    expect(apart.shieldDose[0].band!.p95).toBeLessThan(together.shieldDose[0].band!.p95);
+  });
+
   it('holds all parts behind a bare stack', () => {
     const result = assess(
       toyInput({
