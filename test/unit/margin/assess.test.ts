@@ -181,6 +181,26 @@ describe('assess', () => {
     expect(result.summary.lightestMeetingOptionId).toBeNull();
   });
 
+  it('draws the statistical error of a response with the rest', () => {
+    // One bin counts, so its 20 % error is that of the dose; belts and time are the other two terms.
+    const trajectories = [toyTrajectory({ sharedSigmaDex: 0, fluence: flatElectrons })];
+    const noisy = toyResponse({ name: 'noisy', electron: (e) => (e > 1 && e < 1.1 ? 1e-9 : 0), sigmaRel: 0.2 });
+    const [row] = assess(
+      toyInput({
+        trajectories,
+        options: [option('o1', [place({ response: noisy })])],
+        sampling: { draws: 20_000, seed: 2 },
+      }),
+    ).shieldDose;
+    expect(row.statisticalErrorRel).toBeCloseTo(0.2, 12);
+    // Source: variance of ln(1 + 0.2 ε), 0.0408 + 0.0026 + … by its series (x² + 5/2 x⁴), against (0.3 ln 10)².
+    const statistical = 0.2 ** 2 + 2.5 * 0.2 ** 4;
+    const expected = statistical / (statistical + (0.3 * Math.LN10) ** 2);
+    const share = row.uncertainty.find(({ source }) => source === 'statisticalError')!.share;
+    /** 4 σ of a squared correlation of 0.08 from 2000 draws: 4 · 2 √(0.08 · 0.92² / 2000). */
+    expect(Math.abs(share - expected)).toBeLessThan(0.047);
+  });
+
   it('states a flight that never meets the belts as no dose, which any part stands', () => {
     const result = assess(toyInput({ trajectories: [toyTrajectory({ groupDays: [], fluence: flatElectrons })] }));
     expect(result.shieldDose[0].doseKradSi!.total).toBe(0);
