@@ -10,6 +10,8 @@ import type { ByteSource } from './source.ts';
 const QUOTE = 0x22;
 const HASH = 0x23;
 const J2000_JD = 2_451_545;
+/** A thousand years: a count beyond it has another unit or origin. */
+const MAX_EPOCH_S = 1000 * 365.25 * 86_400;
 const J2000_MJD = 51_544.5;
 
 /** What a CSV table cannot say itself. */
@@ -138,8 +140,14 @@ function epochOf(bytes: Uint8Array, starts: Int32Array, plan: CsvPlan, line: num
   }
   const value = cellNumber(bytes, starts, epochIndex);
   if (Number.isNaN(value)) throw csvInvalid(line, 'epoch', 'is no finite number', cellText(bytes, starts, epochIndex));
-  if (plan.epochFormat === 'secondsPastJ2000') return value;
-  return 86_400 * (value - (plan.epochFormat === 'julianDate' ? J2000_JD : J2000_MJD));
+  const epochTdbS =
+    plan.epochFormat === 'secondsPastJ2000'
+      ? value
+      : 86_400 * (value - (plan.epochFormat === 'julianDate' ? J2000_JD : J2000_MJD));
+  if (Math.abs(epochTdbS) > MAX_EPOCH_S) {
+    throw csvInvalid(line, 'epoch', 'lies more than a thousand years from 2000', cellText(bytes, starts, epochIndex));
+  }
+  return epochTdbS;
 }
 
 /** Advances to the next line that is neither blank nor a remark; remarks go to `comments`. */

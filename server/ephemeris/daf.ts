@@ -14,6 +14,8 @@ const PAGE_WORDS = 8192;
 const MAX_PAGES = 256;
 const MAX_SEGMENTS = 10_000;
 const MAX_COMMENT_RECORDS = 500;
+/** Some 30 000 years either way, wider than any ephemeris reaches. */
+const MAX_EPOCH_S = 1e12;
 const FTP_OFFSET = 699;
 /** Every sequence that a transfer in text mode would change. */
 const FTP_TEXT = 'FTPSTR:\r:\n:\r\n:\r\0:\x81:\x10\xce:ENDFTP';
@@ -181,7 +183,13 @@ export class DafFile {
       first: integer(4),
       last: integer(5),
     };
-    if (!(Number.isFinite(summary.startTdbS) && summary.stopTdbS >= summary.startTdbS)) {
+    if (
+      !(
+        Math.abs(summary.startTdbS) < MAX_EPOCH_S &&
+        Math.abs(summary.stopTdbS) < MAX_EPOCH_S &&
+        summary.stopTdbS >= summary.startTdbS
+      )
+    ) {
       throw spkInvalid(`Segment "${name}" of body ${summary.target} has no valid interval of time.`);
     }
     if (summary.first < 129 || summary.last < summary.first || summary.last > this.wordCount) {

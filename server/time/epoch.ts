@@ -11,6 +11,9 @@ const UPPER_T = 0x54;
 const UPPER_Z = 0x5a;
 /** Day 0 starts at midnight, J2000 is its noon. */
 const NOON_S = 43_200;
+/** Years 0002 to 9998, inside the four digits of a year. */
+const EARLIEST_S = -1998 * 365.25 * 86_400;
+const LATEST_S = 7998 * 365.25 * 86_400;
 const encoder = new TextEncoder();
 
 /**
@@ -141,10 +144,14 @@ export function utcToTdbS(text: string): number {
  * ISO 8601 text of an epoch in a time scale, rounded to a number of decimals, without a trailing Z.
  *
  * @param fractionDigits - 0 to 9
- * @throws {TypeError} when the epoch is not finite; UTC before 1972 is a RangeError
+ * @throws {TypeError} when the epoch is not finite
+ * @throws {RangeError} for UTC before 1972, and for epochs outside the years 0002 to 9998
  */
 export function formatEpoch(epochTdbS: number, scale: TimeScale, fractionDigits = 3): string {
   if (!Number.isFinite(epochTdbS)) throw new TypeError(`An epoch must be finite, got ${epochTdbS}`);
+  if (epochTdbS < EARLIEST_S || epochTdbS > LATEST_S) {
+    throw new RangeError(`${epochTdbS} s lies outside the calendar years 0002 to 9998`);
+  }
   const unit = 10 ** fractionDigits;
   // Rounding before the split keeps 59.9996 s from being printed as 60.000 s. Whole seconds are split off first, so
   // that the product with 10⁹ stays exact.

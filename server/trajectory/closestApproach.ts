@@ -15,7 +15,8 @@ export interface PathSurvey {
 
 /** Share of the local dynamical time and of the flight time to the centre that one step may take. */
 const STEP_SHARE = 0.1;
-const MAX_STEPS = 400_000;
+/** Where a path would need more steps they are lengthened: a minimum is still seen while a step is below half a revolution. */
+const MAX_STEPS = 100_000;
 export const MAX_MINIMA = 2000;
 const BISECTIONS = 60;
 

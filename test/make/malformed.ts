@@ -233,6 +233,7 @@ put(
   edited((bytes) => bytes.set(new TextEncoder().encode('VAX-GFLT'), 88)),
   'SPK_INVALID',
 );
+put('interval-beyond-any-calendar.bsp', writeSpk({ segments: [{ ...segment, stopTdbS: 1e300 }] }), 'SPK_INVALID');
 put('type-10.bsp', writeSpk({ segments: [{ ...segment, type: 10 }] }), 'SPK_TYPE_REFUSED');
 put('rotating-frame.bsp', writeSpk({ segments: [{ ...segment, frame: 10_013 }] }), 'FRAME_REFUSED');
 put('about-mars.bsp', writeSpk({ segments: [{ ...segment, center: 499 }] }), 'CENTER_REFUSED');

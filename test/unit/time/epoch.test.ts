@@ -48,6 +48,7 @@ describe('formatEpoch', () => {
 
   it('refuses what is no epoch', () => {
     expect(() => formatUtc(Number.NaN)).toThrow(TypeError);
+    for (const epoch of [1e300, -1e300, 2.6e11, -6.4e10]) expect(() => formatEpoch(epoch, 'TDB')).toThrow(RangeError);
   });
 });
 
