@@ -4,8 +4,8 @@ import { AppError, type ErrorPlace } from '../errors.ts';
 import type { AssessmentInput } from './input.ts';
 import { checkParts } from './parts.ts';
 
-const MIN_DRAWS = 100;
-const MAX_DRAWS = 100_000;
+export const MIN_DRAWS = 100;
+export const MAX_DRAWS = 100_000;
 const MIN_VERDICT_PERCENTILE = 50;
 const MAX_VERDICT_PERCENTILE = 99.9;
 const MAX_REPETITIONS = 10_000;

@@ -1,8 +1,10 @@
 /** How thick a layer must be for a dose or a margin, with as few shield responses as that takes. */
+import { checkOtherSource } from '../dose/index.ts';
 import { AppError } from '../errors.ts';
 import type { LayerInput, ShieldResponse, StackInput } from '../shielding/types.ts';
 import { gyToKrad } from '../units.ts';
 import { type PreparedCase, sampleShields } from './caseRows.ts';
+import { MAX_DRAWS, MIN_DRAWS } from './checkInput.ts';
 import type { PartInput } from './input.ts';
 import { otherDoseAt } from './otherDose.ts';
 import { checkParts, preparePart } from './parts.ts';
@@ -246,6 +248,14 @@ function check(input: ThicknessInput): void {
     if (!(Number.isInteger(layerIndex) && layerIndex >= 0 && layerIndex < stack.layers.length)) {
       refuse(`#/candidates/${i}/layerIndex`, `must name one of the ${stack.layers.length} layers`, layerIndex);
     }
+  });
+  const { draws, seed } = input.sampling;
+  if (!(Number.isInteger(draws) && draws >= MIN_DRAWS && draws <= MAX_DRAWS)) {
+    refuse('#/sampling/draws', `must be a whole number from ${MIN_DRAWS} to ${MAX_DRAWS}`, draws);
+  }
+  if (!Number.isInteger(seed)) refuse('#/sampling/seed', 'must be a whole number', seed);
+  input.otherSources.forEach((source, i) => {
+    checkOtherSource(source, `#/otherSources/${i}`);
   });
   const known = new Set(input.trajectories.map(({ trajectoryId }) => trajectoryId));
   if (input.cases.length === 0) refuse('#/cases', 'must hold at least one case', 0);

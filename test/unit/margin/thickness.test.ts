@@ -158,6 +158,7 @@ describe('solveThickness', () => {
     ],
     ['an empty range', { minimumMm: 2, maximumMm: 2 }, '#/maximumMm'],
     ['a low percentile', { percentile: 10 }, '#/percentile'],
+    ['a single draw', { sampling: { draws: 1, seed: 1 } }, '#/sampling/draws'],
   ])('refuses %s', async (_, over, pointer) => {
     await expect(solveThickness(input(over), tools)).rejects.toMatchObject({
       code: 'ASSESSMENT_INVALID',
