@@ -52,10 +52,29 @@ export function decimalOfBytes(bytes: Uint8Array, start: number, end: number): n
   return Number.isFinite(value) ? value : Number.NaN;
 }
 
-const encoder = new TextEncoder();
+const scratch = new Uint8Array(256);
+
+/**
+ * Bytes of a short ASCII text in a shared buffer, valid until the next call, without allocating.
+ *
+ * @returns `length` is -1 when the text is longer than 256 characters or not ASCII
+ */
+export function asciiBytes(text: string): { readonly bytes: Uint8Array; readonly length: number } {
+  ascii.length = text.length > scratch.length ? -1 : text.length;
+  for (let i = 0; i < ascii.length; i++) {
+    const code = text.charCodeAt(i);
+    if (code > 127) {
+      ascii.length = -1;
+      break;
+    }
+    scratch[i] = code;
+  }
+  return ascii;
+}
+const ascii = { bytes: scratch, length: 0 };
 
 /** The same for a text. */
 export function decimalOfText(text: string): number {
-  const bytes = encoder.encode(text);
-  return decimalOfBytes(bytes, 0, bytes.length);
+  const { bytes, length } = asciiBytes(text);
+  return length < 0 ? Number.NaN : decimalOfBytes(bytes, 0, length);
 }

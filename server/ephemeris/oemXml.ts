@@ -1,7 +1,7 @@
 import { SaxesParser } from 'saxes';
 import { AppError } from '../errors.ts';
-import { parseEpoch, type TimeScale } from '../time/index.ts';
-import { decimalOfText } from './decimal.ts';
+import { epochOfBytes, type TimeScale, whyNoEpoch } from '../time/index.ts';
+import { asciiBytes, decimalOfText } from './decimal.ts';
 import { HeaderBuilder, MetadataBuilder, type OemHeader, oemInvalid } from './metadata.ts';
 import type { NodeEphemeris, NodeSegment } from './nodes.ts';
 import { SegmentRows } from './segmentRows.ts';
@@ -138,7 +138,7 @@ class XmlReader {
     this.path.push(name);
     this.text = '';
     this.unit = '';
-    for (const { local, value } of Object.values(attributes)) if (local === 'units') this.unit = value.trim();
+    for (const key in attributes) if (attributes[key].local === 'units') this.unit = attributes[key].value.trim();
     switch (name) {
       case 'oem':
         this.openMessage(attributes, line);
@@ -280,14 +280,11 @@ class XmlReader {
   }
 
   private epoch(text: string, line: number): number {
-    try {
-      return parseEpoch(text, this.scale!);
-    } catch (cause) {
-      if (!(cause instanceof AppError)) throw cause;
-      throw new AppError(cause.code, `Line ${line}: ${cause.message}`, [
-        { line, field: 'EPOCH', detail: cause.message },
-      ]);
-    }
+    const { bytes, length } = asciiBytes(text);
+    const epochTdbS = length < 0 ? Number.NaN : epochOfBytes(bytes, 0, length, this.scale!);
+    if (!Number.isNaN(epochTdbS)) return epochTdbS;
+    const detail = whyNoEpoch(text, this.scale!);
+    throw new AppError('EPOCH_UNREADABLE', `Line ${line}: ${detail}`, [{ line, field: 'EPOCH', detail }]);
   }
 }
 
