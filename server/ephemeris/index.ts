@@ -1,10 +1,10 @@
-export { type CsvContext, readCsv } from './csv.ts';
+export { readCsv } from './csv.ts';
 export type { CsvColumns, EpochFormat, LengthUnit, SpeedUnit } from './csvColumns.ts';
 export type { SpkSummary } from './daf.ts';
-export { detectFormat, type EphemerisFormat } from './detect.ts';
+export { detectFormat } from './detect.ts';
 export { eclipticToIcrfInPlace, plainName } from './names.ts';
 export { NodeInterpolator } from './nodeInterpolator.ts';
-export type { InputFrame, InterpolationKind, NodeEphemeris, NodeSegment, SegmentMetadata } from './nodes.ts';
+export type { NodeEphemeris, NodeSegment } from './nodes.ts';
 export { readOemKvn } from './oemKvn.ts';
 export { readOemXml } from './oemXml.ts';
 export { PolynomialWindow } from './polynomial.ts';

@@ -4,7 +4,7 @@ import type { ByteSource } from './source.ts';
 
 const CHUNK_BYTES = 1 << 20;
 /** Far above the 255 characters of CCSDS 502.0-B-3, 7.3.2; a longer line is no text ephemeris. */
-export const MAX_LINE_BYTES = 4096;
+const MAX_LINE_BYTES = 4096;
 const NEWLINE = 10;
 const RETURN = 13;
 

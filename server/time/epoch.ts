@@ -1,6 +1,6 @@
 import { AppError } from '../errors.ts';
 import { dateOf, dayNumber, daysInMonth, firstOfYear, isLeapYear } from './calendar.ts';
-import { FIRST_UTC_DAY, hasLeapSecond, LAST_STEP_DAY, taiMinusUtcS, utcOfTai } from './leapSeconds.ts';
+import { hasLeapSecond, LAST_STEP_DAY, taiMinusUtcS, utcOfTai } from './leapSeconds.ts';
 import { GPS_MINUS_TAI_S, type TimeScale, TT_MINUS_TAI_S, tcbToTdbS, tdbToTcbS, tdbToTtS, ttToTdbS } from './scales.ts';
 
 const DASH = 0x2d;
@@ -88,7 +88,7 @@ function digits(bytes: Uint8Array, start: number, count: number): number {
  * @param secondOfDay - s
  * @returns NaN for UTC before 1972-01-01
  */
-export function tdbOfReading(day: number, secondOfDay: number, scale: TimeScale): number {
+function tdbOfReading(day: number, secondOfDay: number, scale: TimeScale): number {
   const sinceNoonS = day * 86_400 - NOON_S + secondOfDay;
   switch (scale) {
     case 'TDB':
@@ -205,7 +205,5 @@ export function formatUtc(epochTdbS: number, fractionDigits = 3): string {
   return `${formatEpoch(epochTdbS, 'UTC', fractionDigits)}Z`;
 }
 
-/** Earliest epoch that UTC can name, TDB seconds past J2000. */
-export const FIRST_UTC_TDB_S = tdbOfReading(FIRST_UTC_DAY, 0, 'UTC');
 /** Epoch of the last listed leap second: UTC later than this is a projection. */
 export const LAST_LEAP_TDB_S = tdbOfReading(LAST_STEP_DAY, 0, 'UTC');

@@ -16,8 +16,6 @@ const stepDays = Float64Array.from(offsets, (_, i) =>
 );
 const LAST = offsets.length - 1;
 
-/** First day of UTC in its present form, days since 2000-01-01. */
-export const FIRST_UTC_DAY = stepDays[0];
 /** Day of the last listed step, days since 2000-01-01: UTC later than this holds the last offset. */
 export const LAST_STEP_DAY = stepDays[LAST];
 /** TAI − UTC after the last listed step, s. */
@@ -36,7 +34,7 @@ export function hasLeapSecond(day: number): boolean {
 }
 
 /** A moment of UTC: whole days since 2000-01-01 and seconds of that day, up to 86 401 in a day with a leap second. */
-export interface UtcMoment {
+interface UtcMoment {
   day: number;
   secondOfDay: number;
 }

@@ -2,7 +2,7 @@ import { PLANETS, type PlanetId } from '../constants/planets.ts';
 import { plainName } from '../ephemeris/index.ts';
 import { AppError } from '../errors.ts';
 
-export interface Center {
+interface Center {
   readonly planet: PlanetId;
   readonly barycenter: boolean;
 }

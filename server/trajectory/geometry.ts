@@ -1,7 +1,7 @@
 import type { Planet } from '../constants/planets.ts';
 import { bodyAxesInto, latitudeLongitudeDeg, type RotationModel, rotateInto } from '../frames/rotation.ts';
 
-export interface SurfacePoint {
+interface SurfacePoint {
   readonly latitudeDeg: number;
   readonly eastLongitudeDeg: number;
   readonly altitudeKm: number;
@@ -29,7 +29,7 @@ export function surfacePoint(
 }
 
 /** Distance from the centre to the 1-bar ellipsoid in the direction of a body-fixed vector, km. */
-export function ellipsoidRadiusKm(planet: Planet, body: Float64Array): number {
+function ellipsoidRadiusKm(planet: Planet, body: Float64Array): number {
   const { equatorialRadiusKm: a, polarRadiusKm: b } = planet;
   const radius = Math.hypot(body[0], body[1], body[2]);
   if (radius === 0) return b;

@@ -5,7 +5,7 @@ import { safeUtc } from './pieces.ts';
 import type { TrajectoryNotice } from './types.ts';
 
 /** A planet whose own belts a trajectory may cross on its way. */
-export interface GiantPlanet {
+interface GiantPlanet {
   readonly name: string;
   readonly naifId: number;
   readonly barycenterNaifId: number;

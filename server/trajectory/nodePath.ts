@@ -12,7 +12,7 @@ export interface NodePiece extends PathPiece {
   readonly interpolator: NodeInterpolator;
 }
 
-export interface NodePieces {
+interface NodePieces {
   readonly planet: PlanetId;
   readonly pieces: readonly NodePiece[];
   readonly notices: readonly TrajectoryNotice[];

@@ -12,8 +12,8 @@ export interface SampledPath {
   readonly comments?: readonly string[];
 }
 
-/** Share of sqrt(r³/GM) and of r/v between two samples: Hermite of degree 7 then follows the path to metres. */
-const SAMPLE_SHARE = 0.08;
+/** Share of sqrt(r³/GM) and of r/v between two samples: Hermite of degree 7 then follows the path to metres, also at the ends of a span, where its window is one-sided. */
+const SAMPLE_SHARE = 0.05;
 /** More than that is no sample any more; the spacing grows evenly where a path is longer. */
 const MAX_SAMPLES = 500_000;
 

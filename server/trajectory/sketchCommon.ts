@@ -38,7 +38,7 @@ export const MAX_NODES = 200_000;
 export const SKETCH_ORIGINATOR = 'SIDELONG SKETCH';
 
 /** Angles in force at a time from the (first) periapsis, and how fast they drift. */
-export interface Orientation {
+interface Orientation {
   readonly node: number;
   readonly argument: number;
   readonly nodeRateRadS?: number;
