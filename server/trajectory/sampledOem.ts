@@ -42,9 +42,10 @@ export function sampledOem(sampled: SampledPath): string {
         const radiusKm = Math.hypot(state[0], state[1], state[2]);
         const speedKmS = Math.hypot(state[3], state[4], state[5]);
         const natural = SAMPLE_SHARE * Math.min(Math.sqrt(radiusKm ** 3 / planet.gmKm3S2), radiusKm / speedKmS);
-        const next = t + Math.max(shortestS, natural);
-        // The last step closes the span; a remainder shorter than the smallest step is joined to it.
-        t = next > t && next < span.stopTdbS - shortestS / 2 ? next : span.stopTdbS;
+        const step = Math.max(shortestS, natural);
+        const leftS = span.stopTdbS - t;
+        // The last two steps share what is left: a node close to its neighbour would magnify the printed rounding.
+        t = leftS <= step ? span.stopTdbS : t + Math.min(step, leftS / 2);
       }
       return { comments: [], epochsTdbS: epochs, states, interpolation: 'HERMITE' as const, degree: 7 };
     });

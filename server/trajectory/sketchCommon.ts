@@ -82,12 +82,10 @@ export function nodeOffsets(conic: Conic, reachS: number): number[] {
     planeStateInto(conic, t, plane);
     const radiusKm = Math.hypot(plane[0], plane[1]);
     const speedKmS = Math.hypot(plane[2], plane[3]);
-    t += NODE_SHARE * Math.min(Math.sqrt(radiusKm ** 3 / conic.gmKm3S2), radiusKm / speedKmS);
-    forward.push(Math.min(t, reachS));
-  }
-  // A last step of a few milliseconds would only make nodes that differ by rounding.
-  if (forward.length > 1 && forward[forward.length - 1] - forward[forward.length - 2] < 1) {
-    forward.splice(forward.length - 2, 1);
+    const step = NODE_SHARE * Math.min(Math.sqrt(radiusKm ** 3 / conic.gmKm3S2), radiusKm / speedKmS);
+    // The last two steps share what is left: a node close to its neighbour would magnify the printed rounding.
+    t = reachS - t <= step ? reachS : t + Math.min(step, (reachS - t) / 2);
+    forward.push(t);
   }
   return [...forward.map((offset) => -offset).reverse(), 0, ...forward];
 }
