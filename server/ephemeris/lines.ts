@@ -62,7 +62,7 @@ export class LineReader {
     return true;
   }
 
-  /** The line as text, one character per byte above 127 replaced; for keywords, comments and messages. */
+  /** The line as text, read as UTF-8; for keywords, comments and messages. */
   text(): string {
     return textOf(this.bytes, this.start, this.end);
   }

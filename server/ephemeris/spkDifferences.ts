@@ -1,5 +1,5 @@
 import type { DafFile, SpkSummary } from './daf.ts';
-import { requireWords, type SegmentEvaluator, tail, wholeCount } from './spkRecords.ts';
+import { requireWordsWithDirectory, type SegmentEvaluator, tail, wholeCount } from './spkRecords.ts';
 
 const MAX_DIMENSION = 100;
 
@@ -18,7 +18,7 @@ export function openDifferences(daf: DafFile, summary: SpkSummary): SegmentEvalu
     summary.type === 1 ? 15 : wholeCount(summary, dimensionWord, 1, MAX_DIMENSION, 'its number of differences');
   const count = wholeCount(summary, countWord, 1, 2 ** 31, 'its number of records');
   const size = 4 * dimension + 11;
-  requireWords(summary, count * (size + 1) + Math.floor(count / 100) + (summary.type === 1 ? 1 : 2));
+  requireWordsWithDirectory(summary, count * (size + 1) + (summary.type === 1 ? 1 : 2), count);
   const epochs = summary.first + count * size;
   const line = new DifferenceLine(summary, dimension);
   let loaded = -1;

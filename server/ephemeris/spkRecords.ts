@@ -32,9 +32,22 @@ export function wholeCount(summary: SpkSummary, value: number, low: number, high
   return value;
 }
 
+/** The segment must be as long as its counts say. */
 export function requireWords(summary: SpkSummary, expected: number): void {
   const words = summary.last - summary.first + 1;
   if (words !== expected) throw contradiction(summary, `it has ${words} words where its counts need ${expected}`);
+}
+
+/**
+ * The same for a segment with a directory of every hundredth epoch. Writers differ in whether the last epoch of a whole
+ * hundred is listed, (count − 1)/100 or count/100 entries; the directory itself is not used, so both are accepted.
+ *
+ * @param others - words besides the directory
+ */
+export function requireWordsWithDirectory(summary: SpkSummary, others: number, count: number): void {
+  const entries = summary.last - summary.first + 1 - others;
+  if (entries === Math.floor((count - 1) / 100) || entries === Math.floor(count / 100)) return;
+  requireWords(summary, others + Math.floor((count - 1) / 100));
 }
 
 /**

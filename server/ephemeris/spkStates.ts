@@ -1,7 +1,15 @@
 import type { DafFile, SpkSummary } from './daf.ts';
 import { MAX_DEGREE } from './metadata.ts';
 import { PolynomialWindow, windowStart } from './polynomial.ts';
-import { contradiction, lastNotAfter, requireWords, type SegmentEvaluator, tail, wholeCount } from './spkRecords.ts';
+import {
+  contradiction,
+  lastNotAfter,
+  requireWords,
+  requireWordsWithDirectory,
+  type SegmentEvaluator,
+  tail,
+  wholeCount,
+} from './spkRecords.ts';
 import { propagateInto } from './twoBody.ts';
 
 /** How the states of one segment lie in its words. */
@@ -35,7 +43,7 @@ function intervalAt(daf: DafFile, table: StateTable, t: number): number {
 export function openTwoBodyStates(daf: DafFile, summary: SpkSummary): SegmentEvaluator {
   const [gmKm3S2, countWord] = tail(daf, summary, 2);
   const count = wholeCount(summary, countWord, 1, 2 ** 31, 'its number of states');
-  requireWords(summary, 7 * count + Math.floor(count / 100) + 2);
+  requireWordsWithDirectory(summary, 7 * count + 2, count);
   if (!(gmKm3S2 > 0)) throw contradiction(summary, `its gravitational parameter is ${gmKm3S2}`);
   const table: StateTable = { count, size: 6, epochs: summary.first + 6 * count, initialTdbS: 0, stepS: 0 };
   const states = new Float64Array(12);
@@ -147,14 +155,14 @@ function layoutOf(
     const window = wholeCount(summary, windowWord, 2, MAX_DEGREE + 1, 'its window');
     const count = wholeCount(summary, countWord, 2, 2 ** 31, 'its number of packets');
     const size = subtype === 0 ? 12 : 6;
-    requireWords(summary, (size + 1) * count + Math.floor((count - 1) / 100) + 3);
+    requireWordsWithDirectory(summary, (size + 1) * count + 3, count);
     const table = { count, size, epochs: first + size * count, initialTdbS: 0, stepS: 0 };
     return { table, window, hermite: subtype === 0, split: subtype === 0 };
   }
   const [sizeWord, countWord] = tail(daf, summary, 2);
   const count = wholeCount(summary, countWord, 2, 2 ** 31, 'its number of states');
   const window = wholeCount(summary, sizeWord, 1, MAX_DEGREE, 'its window or degree') + 1;
-  requireWords(summary, 7 * count + Math.floor((count - 1) / 100) + 2);
+  requireWordsWithDirectory(summary, 7 * count + 2, count);
   const table = { count, size: 6, epochs: first + 6 * count, initialTdbS: 0, stepS: 0 };
   return { table, window, hermite: type === 13, split: false };
 }

@@ -79,8 +79,8 @@ describe('measured encounters as messages', () => {
     });
   }
 
-  it('gives the published speed at infinity of the flybys', () => {
-    // Source: vis-viva with the printed states; 14.7 and 16.5 km/s to the digits commonly quoted, within the tenth.
+  it('gives the speed at infinity that the printed state implies', () => {
+    // Source: vis-viva equation with the printed state of the independent reader.
     const uranus = readTrajectory(bytesOf(readFileSync(new URL('uranus-1986.oem', FOLDER))));
     const { state } = relative(records.uranus);
     const r = Math.hypot(state[0], state[1], state[2]);
