@@ -7,7 +7,7 @@ import { surveyPath } from './closestApproach.ts';
 import { osculating, surfacePoint } from './geometry.ts';
 import { readNodes } from './nodeReading.ts';
 import { PiecewisePath, safeUtc } from './pieces.ts';
-import { gapsOf, lowestOf, pathNotices, sentences } from './reading.ts';
+import { gapsOf, limited, lowestOf, pathNotices, sentences } from './reading.ts';
 import { readSpk } from './spkReading.ts';
 import type { ClosestApproach, TrajectoryReading, TrajectoryRequest, TrajectorySummary } from './types.ts';
 
@@ -73,7 +73,7 @@ export function readTrajectory(source: ByteSource, request: TrajectoryRequest = 
     gaps,
     closestApproaches: approaches,
     ...osculating(planet.gmKm3S2, state),
-    notices: [...read.notices, ...pathNotices(planet, pieces, survey, approaches, smallestAltitudeKm, gaps)],
+    notices: limited([...read.notices, ...pathNotices(planet, pieces, survey, approaches, smallestAltitudeKm, gaps)]),
   };
   return { summary: { ...facts, reading: sentences(planet, facts) }, path };
 }

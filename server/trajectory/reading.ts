@@ -22,6 +22,30 @@ export function gapsOf(pieces: readonly PathPiece[]): TrajectorySummary['gaps'] 
   return gaps;
 }
 
+/** At most this many notices of a kind are spelled out; a file of thousands of segments would drown the others. */
+const MAX_OF_A_KIND = 20;
+
+/** The notices, with the further ones of a kind counted instead of listed. */
+export function limited(notices: readonly TrajectoryNotice[]): TrajectoryNotice[] {
+  const kept: TrajectoryNotice[] = [];
+  const counts = new Map<string, number>();
+  for (const notice of notices) {
+    const count = (counts.get(notice.code) ?? 0) + 1;
+    counts.set(notice.code, count);
+    if (count <= MAX_OF_A_KIND) kept.push(notice);
+  }
+  for (const notice of notices) {
+    const further = (counts.get(notice.code) ?? 0) - MAX_OF_A_KIND;
+    if (further <= 0) continue;
+    counts.delete(notice.code);
+    kept.push({
+      ...notice,
+      text: `${counted(further)} further notices of the kind "${notice.code}" are not spelled out.`,
+    });
+  }
+  return kept;
+}
+
 /** Notices about the path itself, whatever file it came from. */
 export function pathNotices(
   planet: Planet,
@@ -33,18 +57,11 @@ export function pathNotices(
 ): TrajectoryNotice[] {
   const notices: TrajectoryNotice[] = [];
   const radii = survey.smallestRadiusKm / planet.equatorialRadiusKm;
-  for (const gap of gaps.slice(0, 20)) {
+  for (const gap of gaps) {
     notices.push({
       code: 'gap',
       severity: 'caution',
       text: `No states are usable from ${gap.startUtc} to ${gap.stopUtc} (${duration(gap.durationS)}); this time counts as no dose.`,
-    });
-  }
-  if (gaps.length > 20) {
-    notices.push({
-      code: 'gap',
-      severity: 'caution',
-      text: `${gaps.length - 20} further gaps are listed in the summary; they count as no dose.`,
     });
   }
   if (survey.largestSpeedKmS > IMPOSSIBLE_SPEED_KM_S) {

@@ -102,6 +102,19 @@ describe('notices', () => {
     expect(reading.summary.spans).toHaveLength(2);
   });
 
+  it('spells out twenty gaps and counts the rest', () => {
+    const blocks = Array.from({ length: 60 }, (_, i) => ({
+      fromS: 1000 * i - 30_000,
+      toS: 1000 * i - 29_300,
+      stepS: 100,
+    }));
+    const reading = read(flyby(blocks));
+    const gaps = reading.summary.notices.filter(({ code }) => code === 'gap');
+    expect(reading.summary.gaps).toHaveLength(59);
+    expect(gaps).toHaveLength(21);
+    expect(gaps[20].text).toMatch(/39 further notices of the kind "gap"/);
+  });
+
   it('counts overlapping spans once', () => {
     const reading = read(
       flyby([
