@@ -138,12 +138,12 @@ export class DafFile {
         break;
       }
     }
-    return text
+    const lines = text
       .split('\0')
       .map((line) => line.replace(/[^\x20-\x7e]/g, ' ').trimEnd())
       .join('\n')
-      .trim()
-      .split('\n');
+      .trim();
+    return lines === '' ? [] : lines.split('\n');
   }
 
   private readSummaries(forward: number): SpkSummary[] {

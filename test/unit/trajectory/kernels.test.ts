@@ -74,6 +74,7 @@ describe('kernels', () => {
   it('says when it can only reach the barycentre', () => {
     const reading = read(writeSpk({ segments: [segment(-9, 7, flyby)] }));
     expect(codes(reading)).toContain('barycenter');
+    expect(reading.summary.comments).toEqual([]);
     expectFlyby(reading);
   });
 
