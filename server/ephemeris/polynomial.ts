@@ -37,8 +37,8 @@ export class PolynomialWindow {
     for (let k = 0; k < components; k++) {
       const row = k * capacity;
       for (let j = 0; j < nodeCount; j++) coefficients[row + j] = data[first + j * stride + k];
-      this.reduce(row, 1);
     }
+    this.reduce(1);
   }
 
   /**
@@ -70,16 +70,19 @@ export class PolynomialWindow {
           j === 0 ? data[at] : (data[at] - data[at - stride]) / (knots[2 * j] - knots[2 * j - 2]);
         coefficients[row + 2 * j + 1] = data[at + derivativeShift];
       }
-      this.reduce(row, 2);
     }
+    this.reduce(2);
   }
 
-  /** Divided differences of order `from` and higher, in place. */
-  private reduce(row: number, from: number): void {
-    const { knots, coefficients, count } = this;
+  /** Divided differences of order `from` and higher, in place; one division serves all components. */
+  private reduce(from: number): void {
+    const { knots, coefficients, components, capacity, count } = this;
     for (let order = from; order < count; order++) {
       for (let i = count - 1; i >= order; i--) {
-        coefficients[row + i] = (coefficients[row + i] - coefficients[row + i - 1]) / (knots[i] - knots[i - order]);
+        const inverse = 1 / (knots[i] - knots[i - order]);
+        for (let at = i; at < components * capacity; at += capacity) {
+          coefficients[at] = (coefficients[at] - coefficients[at - 1]) * inverse;
+        }
       }
     }
   }

@@ -119,9 +119,10 @@ export function openPolynomialStates(daf: DafFile, summary: SpkSummary): Segment
       }
       const start = windowStart(used, count, interval, epochTdbS - from > to - epochTdbS);
       if (start !== fitted) {
-        for (let i = 0; i < used; i++) {
-          times[i] = epochAt(daf, table, start + i);
-          if (i > 0 && !(times[i] > times[i - 1])) throw contradiction(summary, 'its epochs do not ascend');
+        if (table.epochs !== 0) daf.wordsInto(table.epochs + start, used, times, 0);
+        else for (let i = 0; i < used; i++) times[i] = table.initialTdbS + (start + i) * table.stepS;
+        for (let i = 1; i < used; i++) {
+          if (!(times[i] > times[i - 1])) throw contradiction(summary, 'its epochs do not ascend');
         }
         daf.wordsInto(summary.first + start * size, used * size, states, 0);
         if (hermite) position.fitHermite(used, times, 0, states, 0, size, 3);
