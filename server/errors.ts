@@ -111,6 +111,12 @@ export const ERROR_CODES = {
     title: 'Sketched trajectory is not possible',
     help: 'Periapsis must lie outside the planet, speeds and periods above zero, angles within a turn, and the path within the limits of states and passes. Each entry of `errors` names the field.',
   },
+  // --- shielding
+  STACK_INVALID: {
+    status: 422,
+    title: 'Stack refused',
+    help: 'A stack has 1 to 20 layers, outside first, each of a known material and of 0.0001 to 500 mm, given in exactly one of thicknessMm, thicknessMil or arealDensityGPerCm2; at most 200 g/cm² in all. A shell needs innerRadiusMm.',
+  },
   // --- field
   FIELD_MODEL_UNKNOWN: {
     status: 422,
