@@ -1,4 +1,5 @@
-import { existsSync } from 'node:fs';
+import { createHash } from 'node:crypto';
+import { createReadStream, existsSync, renameSync } from 'node:fs';
 import { readFile } from 'node:fs/promises';
 import { deserialize, serialize } from 'node:v8';
 import type { Blobs } from './blobs.ts';
@@ -29,13 +30,27 @@ export class Artefacts {
     return path === null ? null : (deserialize(await readFile(path)) as T);
   }
 
+  /** Takes over a file that a worker wrote in the blob directory. @returns its final path */
+  async adopt(key: string, kind: string, temporaryPath: string): Promise<string> {
+    const hash = createHash('sha256');
+    for await (const chunk of createReadStream(temporaryPath)) hash.update(chunk);
+    const sha256 = hash.digest('hex');
+    renameSync(temporaryPath, this.blobs.path(sha256));
+    this.remember(key, kind, sha256);
+    return this.blobs.path(sha256);
+  }
+
   put(key: string, kind: string, value: unknown): string {
     const sha256 = this.blobs.put(serialize(value));
+    this.remember(key, kind, sha256);
+    return this.blobs.path(sha256);
+  }
+
+  private remember(key: string, kind: string, sha256: string): void {
     this.store
       .prepare(
         'INSERT INTO artefacts (key, kind, blobSha256) VALUES (?, ?, ?) ON CONFLICT (key) DO UPDATE SET blobSha256 = excluded.blobSha256',
       )
       .run(key, kind, sha256);
-    return this.blobs.path(sha256);
   }
 }

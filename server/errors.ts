@@ -28,6 +28,36 @@ export const ERROR_CODES = {
     title: 'Request does not fit its schema',
     help: 'The body or query does not match the schema of this call. Each entry of `errors` names the field, what was given and what is allowed.',
   },
+  BODY_UNREADABLE: {
+    status: 400,
+    title: 'Body unreadable',
+    help: 'The body is not what its media type says: JSON that does not parse, or a multipart body without a part named file.',
+  },
+  TOKEN_NEEDED: {
+    status: 401,
+    title: 'Token needed',
+    help: 'This service was started with a TOKEN. Send it as Authorization: Bearer followed by the token.',
+  },
+  HOST_REFUSED: {
+    status: 403,
+    title: 'Host or origin refused',
+    help: 'Requests must name this service as their host, and requests that change something must come from its own pages or from no page at all.',
+  },
+  CONFLICT: {
+    status: 409,
+    title: 'Not in this state',
+    help: 'The item is not in a state that allows the call, for example a report of an assessment that is not done, or the deletion of something that is still in use.',
+  },
+  VERSION_MISMATCH: {
+    status: 412,
+    title: 'Changed in between',
+    help: 'The item was changed since you read it. Read it again, and send the ETag of the newest version as If-Match.',
+  },
+  TOO_LARGE: {
+    status: 413,
+    title: 'Too large',
+    help: 'Uploads are limited by MAX_UPLOAD_MB, JSON bodies to 8 MB.',
+  },
   // --- numeric, constants, matter
   MATERIAL_UNKNOWN: {
     status: 422,

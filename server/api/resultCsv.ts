@@ -1,0 +1,77 @@
+import type { AssessmentResult } from '../margin/index.ts';
+
+/**
+ * One row per part × case × option, with the dose at its place: the numbers of the JSON result, unrounded, units in the
+ * column names. Cells that a spreadsheet would take for a formula are quoted with a leading apostrophe.
+ */
+export function resultCsv(result: AssessmentResult): string {
+  const header = [
+    'case',
+    'option',
+    'place',
+    'shield',
+    'mass_kg',
+    'part',
+    'capability_kradSi',
+    'doseNominal_kradSi',
+    'electron_kradSi',
+    'bremsstrahlung_kradSi',
+    'proton_kradSi',
+    'other_kradSi',
+    'doseP05_kradSi',
+    'doseP50_kradSi',
+    'doseP95_kradSi',
+    'statisticalError_rel',
+    'extrapolatedShare',
+    'requiredRdm',
+    'achievedRdmP50',
+    'achievedRdmP95',
+    'probabilityAboveDose',
+    'probabilityAboveRequired',
+    'verdict',
+    'reason',
+  ];
+  const nameOf = (rows: readonly { readonly name: string }[], key: string, id: string) =>
+    rows.find((row) => (row as unknown as Record<string, unknown>)[key] === id)?.name ?? id;
+  const rows = result.margins.map((margin) => {
+    const dose = result.shieldDose.find(
+      (row) => row.caseId === margin.caseId && row.optionId === margin.optionId && row.placeId === margin.placeId,
+    );
+    const option = result.options.find((entry) => entry.optionId === margin.optionId);
+    const place = option?.places.find((entry) => entry.placeId === margin.placeId);
+    return [
+      nameOf(result.cases, 'caseId', margin.caseId),
+      option?.name ?? margin.optionId,
+      place?.name ?? margin.placeId,
+      place?.shieldText ?? '',
+      place?.massKg ?? null,
+      nameOf(result.parts, 'partId', margin.partId),
+      margin.capabilityKradSi,
+      dose?.doseKradSi?.total ?? null,
+      dose?.doseKradSi?.electron ?? null,
+      dose?.doseKradSi?.bremsstrahlung ?? null,
+      dose?.doseKradSi?.proton ?? null,
+      dose?.doseKradSi?.other ?? null,
+      dose?.band?.p05 ?? null,
+      dose?.band?.p50 ?? null,
+      dose?.band?.p95 ?? null,
+      dose?.statisticalErrorRel ?? null,
+      dose?.extrapolatedFraction ?? null,
+      margin.requiredRdm,
+      margin.achievedRdm,
+      margin.achievedRdmP95,
+      margin.probabilityAboveDose,
+      margin.confidence,
+      margin.verdict,
+      margin.reason,
+    ];
+  });
+  return `${[header, ...rows].map((row) => row.map(cell).join(',')).join('\r\n')}\r\n`;
+}
+
+function cell(value: string | number | null): string {
+  if (value === null) return '';
+  if (typeof value === 'number') return String(value);
+  const safe = /^[=+\-@\t\r]/.test(value) ? `'${value}` : value;
+  return /[",\r\n]/.test(safe) ? `"${safe.replaceAll('"', '""')}"` : safe;
+}

@@ -1,0 +1,150 @@
+import type { z } from 'zod';
+import { AppError } from '../errors.ts';
+import { checkParts, formatPartsCsv, type PartInput, parsePartsCsv } from '../margin/index.ts';
+import { describeStack, massOverAreaKg, normaliseStack } from '../shielding/stack.ts';
+import type { StackInput } from '../shielding/types.ts';
+import { MM_PER_MIL } from '../units.ts';
+import { documentRoutes, sendFile } from './documentRoutes.ts';
+import { defineRoute, type Route } from './routes.ts';
+import { anyObject, caseBody, optionBody, partBody, stackBody, studyBody } from './schemas.ts';
+import { found, onWire, type Shop } from './shop.ts';
+
+/** Studies and what they hold that is entered by hand: cases, stacks, options, parts. */
+export function studyRoutes(shop: Shop): Route[] {
+  const inStudy = (studyId: string) => found(shop.studies.get(studyId), 'study', studyId).id;
+  return [
+    ...documentRoutes({
+      plural: 'studies',
+      singular: 'study',
+      documents: shop.studies,
+      schema: studyBody,
+      toBody: ({ name, ...body }) => ({ name, studyId: null, body }),
+    }),
+    ...documentRoutes({
+      plural: 'cases',
+      singular: 'case',
+      documents: shop.cases,
+      schema: caseBody,
+      toBody: ({ name, studyId, legs }) => {
+        for (const leg of legs) found(shop.trajectories.get(leg.trajectoryId), 'trajectory', leg.trajectoryId);
+        return { name, studyId: inStudy(studyId), body: { legs } };
+      },
+    }),
+    ...documentRoutes({
+      plural: 'stacks',
+      singular: 'stack',
+      documents: shop.stacks,
+      schema: stackBody,
+      toBody: ({ name, studyId, ...body }) => {
+        normaliseStack(body as StackInput);
+        return { name, studyId: inStudy(studyId), body: body as StackInput };
+      },
+      shown: (document) => stackOnWire(document.body),
+    }),
+    ...documentRoutes({
+      plural: 'options',
+      singular: 'option',
+      documents: shop.options,
+      schema: optionBody,
+      toBody: ({ name, studyId, places }) => {
+        const seen = new Set<string>();
+        const stored = places.map((place, index) => {
+          if (seen.has(place.placeId)) {
+            throw new AppError(
+              'REQUEST_INVALID',
+              `#/places/${index}/placeId: "${place.placeId}" stands twice in this option.`,
+              [{ pointer: `#/places/${index}/placeId`, detail: 'used twice', got: place.placeId }],
+            );
+          }
+          seen.add(place.placeId);
+          if ((place.stackId === undefined) === (place.shield === undefined)) {
+            throw new AppError('REQUEST_INVALID', `#/places/${index}: exactly one of stackId and shield is needed.`, [
+              { pointer: `#/places/${index}`, detail: 'exactly one of stackId and shield is needed' },
+            ]);
+          }
+          const stack =
+            place.shield === undefined
+              ? found(shop.stacks.get(place.stackId!), 'stack', place.stackId!).body
+              : (place.shield.stack as StackInput);
+          normaliseStack(stack, `#/places/${index}/shield/stack`);
+          return {
+            placeId: place.placeId,
+            name: place.name,
+            shield: { kind: 'stack' as const, stack },
+            ...(place.areaM2 === undefined ? {} : { areaM2: place.areaM2 }),
+          };
+        });
+        return { name, studyId: inStudy(studyId), body: { places: stored } };
+      },
+      shown: (document) => {
+        const places = document.body.places.map((place) => {
+          const stack = normaliseStack(place.shield.stack);
+          return {
+            ...place,
+            shieldText: describeStack(stack),
+            massKg: place.areaM2 === undefined ? null : massOverAreaKg(stack, place.areaM2),
+          };
+        });
+        const massKg = places.every((place) => place.massKg !== null)
+          ? places.reduce((sum, place) => sum + (place.massKg ?? 0), 0)
+          : null;
+        return { places, massKg };
+      },
+    }),
+    ...documentRoutes<PartInput, z.infer<typeof partBody>>({
+      plural: 'parts',
+      singular: 'part',
+      documents: shop.parts,
+      schema: partBody,
+      toBody: ({ studyId, ...part }) => {
+        checkParts([part as PartInput], '#');
+        return { name: part.name, studyId: inStudy(studyId), body: part as PartInput };
+      },
+    }),
+    defineRoute({
+      method: 'post',
+      path: '/api/studies/{id}/parts.csv',
+      tag: 'parts',
+      summary: 'Add a parts list as CSV; all of it or nothing',
+      rawBody: 'text/csv',
+      answer: anyObject,
+      status: 201,
+      handler: ({ params, request }) => {
+        const studyId = inStudy(params.id);
+        const parts = parsePartsCsv(typeof request.body === 'string' ? request.body : '');
+        checkParts(parts);
+        const items = shop.store.transaction(() =>
+          parts.map((part) => onWire(shop.parts.insert(studyId, part.name, part))),
+        )();
+        return { items };
+      },
+    }),
+    defineRoute({
+      method: 'get',
+      path: '/api/studies/{id}/parts.csv',
+      tag: 'parts',
+      summary: 'The parts of a study as CSV',
+      answerType: 'text/csv',
+      handler: ({ params, response }) => {
+        const parts = shop.parts.list(inStudy(params.id), 1000, null).items.map((document) => document.body);
+        sendFile(response, 'text/csv; charset=utf-8', 'parts.csv', formatPartsCsv(parts));
+      },
+    }),
+  ];
+}
+
+/** A stack with every layer in all three units beside what was entered. */
+function stackOnWire(input: StackInput): Record<string, unknown> {
+  const stack = normaliseStack(input);
+  return {
+    arealDensityGPerCm2: stack.arealDensityGPerCm2,
+    text: describeStack(stack),
+    layersShown: stack.layers.map((layer) => ({
+      materialId: layer.material.id,
+      materialName: layer.material.name,
+      thicknessMm: layer.thicknessMm,
+      thicknessMil: layer.thicknessMm / MM_PER_MIL,
+      arealDensityGPerCm2: layer.arealDensityGPerCm2,
+    })),
+  };
+}

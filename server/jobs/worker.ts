@@ -1,0 +1,125 @@
+import { readFileSync, writeFileSync } from 'node:fs';
+import { deserialize, serialize } from 'node:v8';
+import { fileSource } from '../../db/blobs.ts';
+import { aluminiumDoseDepth } from '../dose/aluminium.ts';
+import {
+  computeExposure,
+  type EnvironmentChoice,
+  type ExposureSummary,
+  type FluenceArtefact,
+} from '../fluence/index.ts';
+import { type AssessmentInput, type AssessmentResult, assess } from '../margin/index.ts';
+import { renderReport } from '../report/index.ts';
+import type { ReportInput } from '../report/types.ts';
+import { runShard, type ShardTally, type ShardTask } from '../shielding/response.ts';
+import type { ShieldResponse } from '../shielding/types.ts';
+import { readTrajectory, type TrajectoryRequest, type TrajectorySummary } from '../trajectory/index.ts';
+import { type EvaluateFieldInput, evaluateField, type SamplePathInput, samplePath } from './pathSampling.ts';
+
+/** What a worker can be asked for; every task and answer is a plain serialisable value. */
+export type WorkerTask =
+  | { readonly kind: 'readTrajectory'; readonly filePath: string; readonly request: TrajectoryRequest }
+  | {
+      readonly kind: 'exposure';
+      readonly filePath: string;
+      readonly request: TrajectoryRequest;
+      readonly environment: EnvironmentChoice;
+      /** Where to write the fluence artefact. */
+      readonly outPath: string;
+    }
+  | { readonly kind: 'shard'; readonly task: ShardTask }
+  | { readonly kind: 'assess'; readonly order: AssessOrder }
+  | ({ readonly kind: 'samplePath'; readonly filePath: string; readonly request: TrajectoryRequest } & SamplePathInput)
+  | ({ readonly kind: 'evaluateField' } & EvaluateFieldInput)
+  | { readonly kind: 'report'; readonly input: ReportInput };
+
+/** An assessment whose large arrays are still files. */
+export interface AssessOrder {
+  readonly input: Omit<AssessmentInput, 'trajectories' | 'options' | 'doseDepthTables'>;
+  readonly trajectories: readonly (Omit<AssessmentInput['trajectories'][number], 'fluence'> & {
+    readonly fluencePath: string;
+  })[];
+  readonly options: readonly (Omit<AssessmentInput['options'][number], 'places'> & {
+    readonly places: readonly (Omit<AssessmentInput['options'][number]['places'][number], 'response'> & {
+      readonly responsePath: string | null;
+    })[];
+  })[];
+}
+
+export type WorkerAnswer<K extends WorkerTask['kind']> = K extends 'readTrajectory'
+  ? { summary: TrajectorySummary; startTdbS: number; stopTdbS: number; pathSha256: string }
+  : K extends 'exposure'
+    ? ExposureSummary
+    : K extends 'shard'
+      ? ShardTally
+      : K extends 'assess'
+        ? AssessmentResult
+        : K extends 'report'
+          ? Uint8Array
+          : unknown;
+
+export default async function work(task: WorkerTask): Promise<unknown> {
+  switch (task.kind) {
+    case 'readTrajectory':
+      return withTrajectory(task.filePath, task.request, ({ summary, path }) => ({
+        summary,
+        startTdbS: path.spans[0].startTdbS,
+        stopTdbS: path.spans[path.spans.length - 1].stopTdbS,
+        pathSha256: path.inputsSha256,
+      }));
+    case 'exposure':
+      return withTrajectory(task.filePath, task.request, ({ path }) => {
+        const { artefact, summary } = computeExposure(path, task.environment);
+        writeFileSync(task.outPath, serialize(artefact));
+        return summary;
+      });
+    case 'shard':
+      return runShard(task.task);
+    case 'assess':
+      return assess(fillOrder(task.order));
+    case 'samplePath':
+      return withTrajectory(task.filePath, task.request, ({ path }) => samplePath(path, task));
+    case 'evaluateField':
+      return evaluateField(task);
+    case 'report':
+      return renderReport(task.input);
+  }
+}
+
+function withTrajectory<T>(
+  filePath: string,
+  request: TrajectoryRequest,
+  use: (reading: ReturnType<typeof readTrajectory>) => T,
+): T {
+  const source = fileSource(filePath);
+  try {
+    return use(readTrajectory(source, request));
+  } finally {
+    source.close();
+  }
+}
+
+function fillOrder(order: AssessOrder): AssessmentInput {
+  const responses = new Map<string, ShieldResponse>();
+  const responseAt = (path: string | null): ShieldResponse | null => {
+    if (path === null) return null;
+    let response = responses.get(path);
+    if (response === undefined) {
+      response = deserialize(readFileSync(path)) as ShieldResponse;
+      responses.set(path, response);
+    }
+    return response;
+  };
+  return {
+    ...order.input,
+    trajectories: order.trajectories.map(({ fluencePath, ...rest }) => ({
+      ...rest,
+      fluence: deserialize(readFileSync(fluencePath)) as FluenceArtefact,
+    })),
+    options: order.options.map((option) => ({
+      ...option,
+      places: option.places.map(({ responsePath, ...place }) => ({ ...place, response: responseAt(responsePath) })),
+    })),
+    doseDepthTables: [aluminiumDoseDepth()],
+  };
+}

@@ -1,0 +1,72 @@
+import { existsSync } from 'node:fs';
+import { createServer } from 'node:http';
+import { fileURLToPath } from 'node:url';
+import express from 'express';
+import { pino } from 'pino';
+import { openStore } from '../db/open.ts';
+import { Shop } from './api/shop.ts';
+import { createApp } from './app.ts';
+import { readConfig } from './config.ts';
+import { seedDemo } from './demo.ts';
+import { Pool } from './jobs/pool.ts';
+
+const CLIENT = fileURLToPath(new URL('../.build/client/', import.meta.url));
+
+/** Serves the REST service and the client on one port. `--dev` builds the client on the fly instead of from .build. */
+async function main(): Promise<void> {
+  const config = readConfig(process.env);
+  const log = pino({ level: config.logLevel });
+  const pool = new Pool();
+  const store = openStore(config.dataDir);
+  const shop = new Shop(store, config.dataDir, pool, (error) => log.error({ error }, 'job failed'));
+  const app = createApp(shop, config, log, process.argv.includes('--dev') ? await devClient() : builtClient());
+  const server = createServer(app);
+  server.listen(config.port, config.host, async () => {
+    const address = server.address();
+    const port = typeof address === 'object' && address !== null ? address.port : config.port;
+    log.info(`Sidelong is at http://${config.host}:${port}/`);
+    shop.runner.start();
+    if (config.demo) await seedDemo(shop);
+  });
+
+  let stopping = false;
+  const stop = async () => {
+    if (stopping) return;
+    stopping = true;
+    log.info('stopping');
+    server.closeAllConnections();
+    server.close();
+    await shop.runner.stop();
+    await pool.close();
+    store.close();
+    process.exit(0);
+  };
+  process.on('SIGTERM', stop);
+  process.on('SIGINT', stop);
+}
+
+function builtClient(): express.RequestHandler {
+  const router = express.Router();
+  router.use(express.static(CLIENT, { index: false, maxAge: '1h', immutable: true }));
+  router.get('/*path', (_request, response) => sendIndex(response));
+  router.get('/', (_request, response) => sendIndex(response));
+  return router;
+}
+
+function sendIndex(response: express.Response): void {
+  const index = `${CLIENT}index.html`;
+  if (existsSync(index)) response.setHeader('Cache-Control', 'no-cache').sendFile(index);
+  else response.status(503).type('text').send('The client is not built; run npm start, or npm run build.');
+}
+
+async function devClient(): Promise<express.RequestHandler> {
+  const { createServer: createVite } = await import('vite');
+  const vite = await createVite({
+    configFile: fileURLToPath(new URL('../client/vite.config.ts', import.meta.url)),
+    server: { middlewareMode: true },
+    appType: 'spa',
+  });
+  return vite.middlewares;
+}
+
+await main();
