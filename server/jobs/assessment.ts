@@ -105,21 +105,28 @@ export async function runAssessment(
   const { snapshot } = document.body;
   const notices: ResultNotice[] = [];
 
-  const trajectories: AssessOrder['trajectories'][number][] = [];
-  for (const [index, trajectory] of snapshot.trajectories.entries()) {
-    context.progress((0.35 * index) / snapshot.trajectories.length, `Following ${trajectory.name} through the belts`);
-    const environment = environmentFor(snapshot.environment, trajectory.planet, trajectory.startTdbS);
-    const { fluencePath } = await exposureOf(shop, trajectory, environment, context);
-    trajectories.push({
-      trajectoryId: trajectory.id,
-      name: trajectory.name,
-      sourceSha256: trajectory.blobSha256,
-      environment,
-      startTdbS: trajectory.startTdbS,
-      stopTdbS: trajectory.stopTdbS,
-      fluencePath,
-    });
-  }
+  let followed = 0;
+  context.progress(0, 'Following the paths through the belts');
+  const trajectories: AssessOrder['trajectories'] = await Promise.all(
+    snapshot.trajectories.map(async (trajectory) => {
+      const environment = environmentFor(snapshot.environment, trajectory.planet, trajectory.startTdbS);
+      const { fluencePath } = await exposureOf(shop, trajectory, environment, context);
+      followed += 1;
+      context.progress(
+        (0.35 * followed) / snapshot.trajectories.length,
+        `Followed ${trajectory.name} through the belts`,
+      );
+      return {
+        trajectoryId: trajectory.id,
+        name: trajectory.name,
+        sourceSha256: trajectory.blobSha256,
+        environment,
+        startTdbS: trajectory.startTdbS,
+        stopTdbS: trajectory.stopTdbS,
+        fluencePath,
+      };
+    }),
+  );
 
   const shields = snapshot.options.flatMap((option) => option.places.map((place) => place.shield.stack));
   let finished = 0;
