@@ -147,6 +147,11 @@ export const ERROR_CODES = {
     title: 'Stack refused',
     help: 'A stack has 1 to 20 layers, outside first, each of a known material and of 0.0001 to 500 mm, given in exactly one of thicknessMm, thicknessMil or arealDensityGPerCm2; at most 200 g/cm² in all. A shell needs innerRadiusMm.',
   },
+  RESPONSE_UNSUPPORTED: {
+    status: 422,
+    title: 'No response for this shield',
+    help: 'The particles cannot be carried through a shield of this geometry. The problem names the geometry and what is possible.',
+  },
   // --- field
   FIELD_MODEL_UNKNOWN: {
     status: 422,

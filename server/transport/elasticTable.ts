@@ -1,4 +1,10 @@
-import { type Material, moliereScreening, mottCoefficientsInto, mottRatio, rutherfordStrength } from '../matter/index.ts';
+import {
+  type Material,
+  moliereScreening,
+  mottCoefficientsInto,
+  mottRatio,
+  rutherfordStrength,
+} from '../matter/index.ts';
 import { ELASTIC_QUANTILES } from './layout.ts';
 
 /** Steps of the angular integrals, equal in ln(1 + μ/A). */

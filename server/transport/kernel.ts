@@ -92,10 +92,14 @@ export class Kernel {
     this.target = geometry.target;
     this.layerCount = n;
     this.options = options;
-    this.tables = layers.map((layer) => (layer.material === null ? null : transportTables(layer.material, options.cutMeV)));
+    this.tables = layers.map((layer) =>
+      layer.material === null ? null : transportTables(layer.material, options.cutMeV),
+    );
     this.bounds = new Float64Array(n + 1);
     for (let i = 0; i < n; i++) this.bounds[i + 1] = this.bounds[i] + layers[i].thickness;
-    this.density = Float64Array.from(layers, ({ material }) => (geometry.spherical ? (material?.densityGPerCm3 ?? 0) : 1));
+    this.density = Float64Array.from(layers, ({ material }) =>
+      geometry.spherical ? (material?.densityGPerCm3 ?? 0) : 1,
+    );
     this.importance = Float64Array.from(layers, (layer) => layer.importance);
     this.forcing = Float64Array.from(layers, (layer) => layer.forcing);
     this.maxStep = Float64Array.from(layers, (layer, i) =>
@@ -269,7 +273,8 @@ export class Kernel {
         }
         steps += 1;
         const bound = table[at + RATE_BOUND];
-        const stopping = table[at + STOPPING] + fraction * (table[at + ELECTRON_COLUMNS + STOPPING] - table[at + STOPPING]);
+        const stopping =
+          table[at + STOPPING] + fraction * (table[at + ELECTRON_COLUMNS + STOPPING] - table[at + STOPPING]);
         path = -Math.log(generator.next()) / bound;
         let longest = (STEP_LOSS_SHARE * energy) / stopping;
         if (longest > this.maxStep[layer]) longest = this.maxStep[layer];
@@ -285,7 +290,8 @@ export class Kernel {
         fraction = (pattern & FRACTION_MASK) * FRACTION_SCALE;
         const next = at + ELECTRON_COLUMNS;
         let loss = path * (table[at + STOPPING] + fraction * (table[next + STOPPING] - table[at + STOPPING]));
-        const variance = path * (table[at + STRAGGLING] + fraction * (table[next + STRAGGLING] - table[at + STRAGGLING]));
+        const variance =
+          path * (table[at + STRAGGLING] + fraction * (table[next + STRAGGLING] - table[at + STRAGGLING]));
         loss = straggled(loss, variance, generator.next());
         if (loss > energy) loss = energy;
         const perPath = loss / path;

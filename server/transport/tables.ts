@@ -110,7 +110,8 @@ function buildTables(of: Material, cutMeV: number): TransportTables {
     electron[at + SOFT_1] = elastic.soft1 + electronSoft1;
     electron[at + SOFT_2] = elastic.soft2 + 3 * electronSoft1;
     const inverse = 1 / (collision + radiative);
-    range = row === 0 ? 0.56 * energy * inverse : range + 0.5 * (inverse + lastInverse) * (energy - rowEnergyMeV(row - 1));
+    range =
+      row === 0 ? 0.56 * energy * inverse : range + 0.5 * (inverse + lastInverse) * (energy - rowEnergyMeV(row - 1));
     lastInverse = inverse;
     electron[at + RANGE] = range;
     const cross = photonCrossSections(of, Math.min(Math.max(energy, 0.001), 100));

@@ -1,0 +1,81 @@
+import { electronCsdaRange, type Material, material } from '../matter/index.ts';
+import type { TransportGeometry, TransportLayer, TransportOptions } from '../transport/geometry.ts';
+import { normaliseStack } from './stack.ts';
+import type { StackInput, TargetMaterialId } from './types.ts';
+
+/** Target: a layer this thick behind slabs, a ball of this radius at the centre of spheres and shells, mm. */
+export const TARGET_MM = 0.1;
+/** Depth of the backing of a backed slab, g/cm²: all that scatters back into the target. */
+const BACKING_G_PER_CM2 = 5;
+/** Part of the shield next to the target in which photon collisions are forced: range of most of their electrons, g/cm². */
+const ZONE_G_PER_CM2 = 0.4;
+const ZONE_FORCING = 8;
+/** Photon collisions in the target happen this many times as often. */
+const TARGET_FORCING = 64;
+/** Shield depths, as shares of its thickness, from which particles are twice as important as before. */
+const SPLIT_DEPTHS = [0.3, 0.5, 0.7, 0.85];
+/** Electrons whose range is below this many shield thicknesses are split on their way. */
+const SPLIT_BELOW_RANGE = 2.5;
+
+interface Piece {
+  readonly material: Material;
+  readonly thickness: number;
+}
+
+/** What the histories of one electron bin run through, and with which cuts. */
+export function slabTransport(
+  stack: StackInput,
+  target: TargetMaterialId,
+  energyMeV: number,
+): { geometry: TransportGeometry; options: TransportOptions } {
+  const { layers, backing, arealDensityGPerCm2: total } = normaliseStack(stack);
+  const pieces: Piece[] = layers.map((layer) => ({ material: layer.material, thickness: layer.arealDensityGPerCm2 }));
+  const outermost = pieces[0].material;
+  const rangeRatio = electronCsdaRange(outermost, energyMeV) / total;
+  const split = rangeRatio < SPLIT_BELOW_RANGE;
+  const marks = split ? SPLIT_DEPTHS.map((share) => share * total) : [];
+  const zone = Math.max(0, total - ZONE_G_PER_CM2);
+  const cuts = [...marks, zone].sort((a, b) => a - b);
+  const transport: TransportLayer[] = [];
+  let top = 0;
+  for (const piece of pieces) {
+    const bottom = top + piece.thickness;
+    let from = top;
+    for (const cut of [...cuts.filter((at) => at > top * (1 + 1e-9) && at < bottom * (1 - 1e-9)), bottom]) {
+      const middle = 0.5 * (from + cut);
+      transport.push({
+        material: piece.material,
+        thickness: cut - from,
+        importance: 2 ** marks.filter((mark) => mark < middle).length,
+        forcing: middle > zone ? ZONE_FORCING : 1,
+      });
+      from = cut;
+    }
+    top = bottom;
+  }
+  const importance = 2 ** marks.length;
+  const of = material(target);
+  const targetIndex = transport.length;
+  transport.push({
+    material: of,
+    thickness: 0.1 * TARGET_MM * of.densityGPerCm3,
+    importance,
+    forcing: TARGET_FORCING,
+  });
+  if (backing === 'same') {
+    const last = pieces[pieces.length - 1].material;
+    transport.push({ material: last, thickness: ZONE_G_PER_CM2, importance, forcing: ZONE_FORCING });
+    transport.push({ material: last, thickness: BACKING_G_PER_CM2 - ZONE_G_PER_CM2, importance, forcing: 1 });
+  }
+  return {
+    geometry: { spherical: false, layers: transport, target: targetIndex },
+    options: { ...cutsFor(energyMeV), photons: true, survival: 0.25, photonSplit: rangeRatio < 1.2 ? 8 : 2, bins: 0 },
+  };
+}
+
+/** Cuts that keep what happens below them inside the target and the last layers of the shield. */
+export function cutsFor(energyMeV: number): { cutMeV: number; absorbMeV: number } {
+  if (energyMeV < 0.1) return { cutMeV: 0.004, absorbMeV: 0.004 };
+  if (energyMeV < 0.5) return { cutMeV: 0.01, absorbMeV: 0.01 };
+  return energyMeV < 10 ? { cutMeV: 0.02, absorbMeV: 0.02 } : { cutMeV: 0.04, absorbMeV: 0.02 };
+}
