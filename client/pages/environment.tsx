@@ -1,0 +1,128 @@
+import { useEffect, useState } from 'preact/hooks';
+import { fluenceScene, fluxHistoryScene, percent, phaseFluenceScene, three } from '../../server/figures/index.ts';
+import { all, call, type ExposureState, type TrajectoryItem } from '../api.ts';
+import { Figure } from '../figure.tsx';
+import { Empty, Link, ProblemBox, Progress, useLoaded } from '../parts.tsx';
+import { route, studyId } from '../state.ts';
+
+const MODES = [
+  ['', 'as the rotation model allows'],
+  ['sweep', 'sweep over all phases'],
+  ['drawn', 'drawn from the model’s error'],
+  ['published', 'as published'],
+] as const;
+
+export function EnvironmentPage() {
+  const study = studyId.value!;
+  const { value, error } = useLoaded(() => all<TrajectoryItem>(`/api/trajectories?studyId=${study}`), study);
+  const chosen = route.value.split('/')[2] ?? value?.[0]?.id;
+  const [mode, setMode] = useState('');
+  return (
+    <>
+      <h1>Environment</h1>
+      <ProblemBox error={error} />
+      {value !== null && value.length === 0 && <Empty>No trajectory yet; upload one first.</Empty>}
+      <div class="row">
+        <nav class="tabs" aria-label="Trajectories">
+          {(value ?? []).map((entry) => (
+            <Link key={entry.id} to={`/environment/${entry.id}`} class={entry.id === chosen ? 'here' : ''}>
+              {entry.name}
+            </Link>
+          ))}
+        </nav>
+        <label>
+          Rotation phase{' '}
+          <select value={mode} onChange={(event) => setMode(event.currentTarget.value)}>
+            {MODES.map(([id, label]) => (
+              <option key={id} value={id}>
+                {label}
+              </option>
+            ))}
+          </select>
+        </label>
+      </div>
+      {chosen !== undefined && value !== null && (
+        <Exposure key={`${chosen}${mode}`} trajectoryId={chosen} mode={mode} />
+      )}
+    </>
+  );
+}
+
+function Exposure({ trajectoryId, mode }: { trajectoryId: string; mode: string }) {
+  const [state, setState] = useState<ExposureState | null>(null);
+  const [error, setError] = useState<unknown>(null);
+  useEffect(() => {
+    let gone = false;
+    const watch = async () => {
+      try {
+        const { id } = await call<{ id: string }>('POST', '/api/exposures', {
+          trajectoryId,
+          ...(mode === '' ? {} : { phase: { mode } }),
+        });
+        while (!gone) {
+          const now = await call<ExposureState>('GET', `/api/exposures/${id}`);
+          if (gone) return;
+          setState(now);
+          if (now.state !== 'queued' && now.state !== 'running') return;
+          await new Promise((resolve) => setTimeout(resolve, 500));
+        }
+      } catch (failure) {
+        setError(failure);
+      }
+    };
+    watch();
+    return () => {
+      gone = true;
+    };
+  }, [trajectoryId, mode]);
+  if (error !== null) return <ProblemBox error={error} />;
+  if (state?.problem != null) return <ProblemBox error={new Error(state.problem.detail)} />;
+  if (state?.summary == null)
+    return <Progress share={state?.progress ?? 0} message="Following the path through the belts" />;
+  const { summary } = state;
+  const electrons = summary.species.electron;
+  return (
+    <>
+      <dl class="facts">
+        <dt>Belts</dt>
+        <dd>{summary.beltModelId}</dd>
+        <dt>Field and offset of the nominal variant</dt>
+        <dd>
+          {summary.nominal.fieldModelId}, {three(summary.nominal.offsetDeg)}°
+        </dd>
+        <dt>Phase error at arrival (1 σ)</dt>
+        <dd>{summary.phaseSigmaDeg > 180 ? 'unknown phase' : `${three(summary.phaseSigmaDeg)}°`}</dd>
+        <dt>90 % of the fluence in</dt>
+        <dd>{three(summary.hoursOf90Percent)} h</dd>
+        <dt>From where nothing was measured</dt>
+        <dd>{percent(electrons.byEvidence.extrapolated)} of the electrons above 1 MeV</dd>
+      </dl>
+      <Figure scene={fluxHistoryScene(summary)} caption="Integral electron flux along the path, nominal." />
+      <Figure scene={fluenceScene(summary)} caption="Integral fluence, omnidirectional, nominal." />
+      {summary.byPhase.length > 2 && (
+        <Figure scene={phaseFluenceScene(summary)} caption="Electrons above 1 MeV against the rotation offset." />
+      )}
+      <table>
+        <caption>Fluence and peak flux of electrons, nominal</caption>
+        <thead>
+          <tr>
+            <th class="num">Above, MeV</th>
+            <th class="num">Fluence, cm⁻²</th>
+            <th class="num">Peak flux, cm⁻² s⁻¹</th>
+            <th>When, UTC</th>
+          </tr>
+        </thead>
+        <tbody>
+          {electrons.peaks.map((peak, index) => (
+            <tr key={peak.thresholdMeV}>
+              <td class="num">{three(peak.thresholdMeV)}</td>
+              <td class="num">{three(electrons.fluencePerCm2[index])}</td>
+              <td class="num">{three(peak.fluxPerCm2S)}</td>
+              <td>{peak.utc ?? '–'}</td>
+            </tr>
+          ))}
+        </tbody>
+      </table>
+    </>
+  );
+}
