@@ -42,7 +42,6 @@ export function Figure({ scene, caption }: { scene: Scene; caption: string }) {
       >
         <title>{scene.title}</title>
         {scene.nodes.map((node, index) => (
-          // biome-ignore lint/suspicious/noArrayIndexKey: a scene has no other identity for its nodes
           <Node key={index} node={node} />
         ))}
         {shown !== undefined && <circle cx={shown.x} cy={shown.y} r="5" class="readout" />}
@@ -78,7 +77,6 @@ function Node({ node }: { node: SceneNode }) {
           </clipPath>
         )}
         {node.children.map((child, index) => (
-          // biome-ignore lint/suspicious/noArrayIndexKey: a scene has no other identity for its nodes
           <Node key={index} node={child} />
         ))}
       </g>

@@ -53,7 +53,6 @@ export function useLoaded<T>(
   const [value, setValue] = useState<T | null>(null);
   const [error, setError] = useState<unknown>(null);
   const [count, setCount] = useState(0);
-  // biome-ignore lint/correctness/useExhaustiveDependencies: the key stands for what `load` closes over
   useEffect(() => {
     if (key === null) return;
     let gone = false;

@@ -65,7 +65,6 @@ export function ShieldingPage() {
               </thead>
               <tbody>
                 {stack.layersShown.map((layer, index) => (
-                  // biome-ignore lint/suspicious/noArrayIndexKey: layers are told apart by their order alone
                   <tr key={index}>
                     <td>{layer.materialName}</td>
                     <td class="num">{three(layer.thicknessMm)}</td>
@@ -94,7 +93,6 @@ function LayerDrawing({ stack }: { stack: StackItem }) {
         const from = x;
         x += width;
         return (
-          // biome-ignore lint/suspicious/noArrayIndexKey: layers are told apart by their order alone
           <g key={index}>
             <rect x={from} y="0" width={width} height="30" class={`fill-series${index % 8} stroke-paper`} />
             <text x={from + width / 2} y="42" text-anchor="middle" font-size="11" class="fill-ink">
@@ -232,7 +230,6 @@ function OptionForm({ stacks, onMade }: { stacks: readonly StackItem[]; onMade: 
           Name <input name="name" required />
         </label>
         {Array.from({ length: rows }, (_, k) => (
-          // biome-ignore lint/suspicious/noArrayIndexKey: rows of a form
           <fieldset key={k} class="grid">
             <legend>Place {k + 1}</legend>
             <label>

@@ -14,7 +14,6 @@ export class Pool {
       minThreads: 1,
       maxThreads: size,
       idleTimeout: 60_000,
-      execArgv: ['--import', import.meta.resolve('tsx')],
     });
   }
 

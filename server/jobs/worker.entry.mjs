@@ -1,6 +1,9 @@
-/** Entry of a worker thread. Refusals cross the thread as plain values, since an error loses its class on the way. */
-import { AppError } from '../errors.ts';
-import work from './worker.ts';
+/** Entry of a worker thread: teaches it TypeScript, then answers tasks. Refusals cross the thread as plain values. */
+import { register } from 'tsx/esm/api';
+
+register();
+const { AppError } = await import('../errors.ts');
+const { default: work } = await import('./worker.ts');
 
 export default async function entry(task) {
   try {
