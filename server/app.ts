@@ -69,7 +69,7 @@ export function createApp(shop: Shop, config: Config, log: Logger, client?: expr
 
   app.use((error: unknown, request: Request, response: Response, _next: NextFunction) => {
     const problem = problemOf(asRefusal(error), request.originalUrl);
-    if (problem.status >= 500) log.error({ error, instance: problem.instance }, 'defect');
+    if (problem.status >= 500) log.error({ err: error, instance: problem.instance }, 'defect');
     if (response.headersSent) {
       response.end();
       return;

@@ -147,6 +147,11 @@ export const ERROR_CODES = {
     title: 'Stack refused',
     help: 'A stack has 1 to 20 layers, outside first, each of a known material and of 0.0001 to 500 mm, given in exactly one of thicknessMm, thicknessMil or arealDensityGPerCm2; at most 200 g/cm² in all. A shell needs innerRadiusMm.',
   },
+  BEAM_INVALID: {
+    status: 422,
+    title: 'Beam case refused',
+    help: 'A beam case has particle (electron, photon or proton), energyMeV, incidence ("cosine" or angleDeg from 0 to below 90), layers with materialId and thicknessGPerCm2 (at most 200 g/cm² in all), bins, histories, seed and photons.',
+  },
   RESPONSE_UNSUPPORTED: {
     status: 422,
     title: 'No response for this shield',

@@ -18,7 +18,7 @@ async function main(): Promise<void> {
   const log = pino({ level: config.logLevel });
   const pool = new Pool();
   const store = openStore(config.dataDir);
-  const shop = new Shop(store, config.dataDir, pool, (error) => log.error({ error }, 'job failed'));
+  const shop = new Shop(store, config.dataDir, pool, (error) => log.error({ err: error }, 'job failed'));
   const app = createApp(shop, config, log, process.argv.includes('--dev') ? await devClient() : builtClient());
   const server = createServer(app);
   server.listen(config.port, config.host, async () => {

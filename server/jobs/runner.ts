@@ -1,4 +1,4 @@
-import { EventEmitter } from 'node:events';
+import { EventEmitter, setMaxListeners } from 'node:events';
 import { type JobRow, JobRows } from '../../db/jobs.ts';
 import type { Store } from '../../db/open.ts';
 import { problemOf } from '../api/problem.ts';
@@ -68,6 +68,8 @@ export class Runner {
     const job = this.rows.nextQueued();
     if (job === undefined) return;
     const abort = new AbortController();
+    // Every task in the pool listens to the one signal of its job.
+    setMaxListeners(0, abort.signal);
     this.current = { id: job.id, abort };
     this.change(job.id, { state: 'running' });
     this.idle = this.execute(job, abort.signal).finally(() => {

@@ -69,7 +69,7 @@ export function slabTransport(
   }
   return {
     geometry: { spherical: false, layers: transport, target: targetIndex },
-    options: { ...cutsFor(energyMeV), photons: true, survival: 0.25, photonSplit: rangeRatio < 1.2 ? 8 : 2, bins: 0 },
+    options: { ...cutsFor(energyMeV), photons: true, survival: 0.25, photonSplit: rangeRatio < 1.2 ? 12 : 4, bins: 0 },
   };
 }
 

@@ -84,6 +84,8 @@ export class Kernel {
   private readonly stackReal = new Float64Array(STACK_SIZE * 4);
   private readonly stackInt = new Int32Array(STACK_SIZE * 4);
   private depth = 0;
+  /** Photons that leave are counted beside charged particles in histories of photons only. */
+  private countPhotons = false;
 
   constructor(geometry: TransportGeometry, options: TransportOptions) {
     const { layers } = geometry;
@@ -140,6 +142,7 @@ export class Kernel {
       this.binCharge.fill(0);
     }
     const last = this.layerCount - 1;
+    this.countPhotons = kind === PHOTON;
     this.depth = 0;
     if (this.spherical) this.push(kind, this.bounds[last + 1], -cosine, energyMeV, 1, last, 0, 0);
     else this.push(kind, 0, cosine, energyMeV, 1, 0, 0, 0);
@@ -220,7 +223,7 @@ export class Kernel {
     const { score } = this;
     const rest = kind === POSITRON ? 2 * ELECTRON_REST_MEV : 0;
     score[ACCOUNTED] += weight * (energy + rest);
-    if (energy > COUNT_ABOVE_MEV && kind !== PHOTON) {
+    if (energy > COUNT_ABOVE_MEV && (kind !== PHOTON || this.countPhotons)) {
       score[through ? THROUGH_NUMBER : BACK_NUMBER] += weight;
       score[through ? THROUGH_ENERGY : BACK_ENERGY] += weight * energy;
     }
@@ -237,6 +240,8 @@ export class Kernel {
     const fromPhoton = stackInt[4 * slot + 2];
     let rouletted = stackInt[4 * slot + 3];
     const { absorbMeV, cutMeV, survival } = options;
+    // Depth bins may be finer than steps: a segment is scored at a random point of it.
+    const binned = options.bins > 0;
     let steps = 0;
     for (;;) {
       const tables = this.tables[layer];
@@ -305,13 +310,13 @@ export class Kernel {
           path = far * density;
         } else {
           const moved = hinge / density;
-          const middle = x + 0.5 * moved * w;
+          const spot = binned ? x + generator.next() * moved * w : x;
           if (this.spherical) {
             const r = Math.sqrt(x * x + moved * moved + 2 * x * moved * w);
             w = (x * w + moved) / r;
             x = r;
           } else x += moved * w;
-          this.deposit(layer, middle, weight * hinge * perPath, fromPhoton);
+          this.deposit(layer, spot, weight * hinge * perPath, fromPhoton);
           energy -= hinge * perPath;
           const soft1 = table[at + SOFT_1] + fraction * (table[next + SOFT_1] - table[at + SOFT_1]);
           const soft2 = table[at + SOFT_2] + fraction * (table[next + SOFT_2] - table[at + SOFT_2]);
@@ -324,19 +329,19 @@ export class Kernel {
             path = far * density;
           } else {
             const onward = rest / density;
-            const centre = x + 0.5 * onward * w;
+            const spot = binned ? x + generator.next() * onward * w : x;
             if (this.spherical) {
               const r = Math.sqrt(x * x + onward * onward + 2 * x * onward * w);
               w = (x * w + onward) / r;
               x = r;
             } else x += onward * w;
-            this.deposit(layer, centre, weight * rest * perPath, fromPhoton);
+            this.deposit(layer, spot, weight * rest * perPath, fromPhoton);
             energy -= rest * perPath;
             if (energy < 1e-9) energy = 1e-9;
           }
         }
         if (crossed) {
-          this.deposit(layer, x + 0.5 * far * w, weight * path * perPath, fromPhoton);
+          this.deposit(layer, binned ? x + generator.next() * far * w : x, weight * path * perPath, fromPhoton);
           energy -= path * perPath;
           if (energy < 1e-9) energy = 1e-9;
         } else {
@@ -641,11 +646,16 @@ function straggled(mean: number, variance: number, u: number): number {
  * distributions side by side that carry the first two moments.
  */
 function hingeAngle(t1: number, t2: number, u: number, v: number): number {
-  const mean = -0.5 * Math.expm1(-t1);
-  const square = mean + Math.expm1(-t2) / 6;
+  const mean = 0.5 * lostShare(t1);
+  const square = mean - lostShare(t2) / 6;
   const split = (2 * mean - 3 * square) / (1 - 2 * mean);
   const lower = 1 - 2 * mean + split;
   return u < lower ? v * split : split + v * (1 - split);
+}
+
+/** 1 − exp(−t); below 0.1 by its series, to 1e-8. */
+function lostShare(t: number): number {
+  return t < 0.1 ? t * (1 - (t / 2) * (1 - (t / 3) * (1 - (t / 4) * (1 - t / 5)))) : -Math.expm1(-t);
 }
 
 /** Share of the energy that a Møller collision gives to the slower electron, from `cut` to one half. */
