@@ -49,7 +49,8 @@ export function mountRoutes(app: Express, routes: readonly Route[]): void {
         response,
       });
       if (answer === undefined || response.headersSent) return;
-      response.status(route.status ?? 200).json(answer);
+      if (route.status !== undefined) response.status(route.status);
+      response.json(answer);
     });
   }
 }

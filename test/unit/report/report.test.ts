@@ -1,0 +1,59 @@
+import { execFileSync, spawnSync } from 'node:child_process';
+import { mkdtempSync, rmSync, writeFileSync } from 'node:fs';
+import { tmpdir } from 'node:os';
+import { join } from 'node:path';
+import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { three } from '../../../server/figures/index.ts';
+import { renderReport } from '../../../server/report/index.ts';
+import { CAUTIONS } from '../../../server/report/words.ts';
+import { smallReport } from './fixture.ts';
+
+const has = (command: string) => spawnSync(command, ['--version']).error === undefined;
+const TOOLS = has('pdftotext') && has('qpdf') && has('pdffonts');
+if (!TOOLS) console.error('pdftotext, pdffonts or qpdf is missing: the checks of the printed report are skipped');
+
+let folder: string;
+let bytes: Uint8Array;
+const input = smallReport();
+
+beforeAll(async () => {
+  folder = mkdtempSync(join(tmpdir(), 'sidelong-report-'));
+  bytes = await renderReport(input);
+  writeFileSync(join(folder, 'report.pdf'), bytes);
+});
+afterAll(() => rmSync(folder, { recursive: true, force: true }));
+
+describe('report', () => {
+  it('gives the same bytes for the same report', async () => {
+    expect(Buffer.compare(Buffer.from(await renderReport(input)), Buffer.from(bytes))).toBe(0);
+  });
+
+  it('stays below 5 MB', () => {
+    expect(bytes.length).toBeLessThan(5e6);
+  });
+
+  it.skipIf(!TOOLS)('prints every dose and margin of the result, and the caution notes', () => {
+    const text = execFileSync('pdftotext', ['-layout', join(folder, 'report.pdf'), '-'], { encoding: 'utf8' });
+    const flat = text.replaceAll(/\s+/g, ' ');
+    for (const row of input.result.shieldDose) {
+      expect(flat).toContain(three(row.doseKradSi!.total));
+      expect(flat).toContain(three(row.band!.p95));
+    }
+    for (const row of input.result.margins) expect(flat).toContain(three(row.achievedRdmP95));
+    for (const note of CAUTIONS) expect(flat).toContain(note.slice(0, 30));
+    expect(flat).toContain(input.result.provenance.resultSha256);
+    expect(flat).not.toContain('�');
+  });
+
+  it.skipIf(!TOOLS)('is a sound, tagged PDF with all its fonts inside', () => {
+    execFileSync('qpdf', ['--check', join(folder, 'report.pdf')]);
+    const info = execFileSync('pdfinfo', [join(folder, 'report.pdf')], { encoding: 'utf8' });
+    expect(info).toMatch(/Tagged:\s+yes/);
+    const fonts = execFileSync('pdffonts', [join(folder, 'report.pdf')], { encoding: 'utf8' })
+      .trim()
+      .split('\n')
+      .slice(2);
+    expect(fonts.length).toBeGreaterThan(0);
+    for (const font of fonts) expect(font).toMatch(/\syes\s+(yes|no)\s+yes\s/);
+  });
+});
