@@ -1,0 +1,184 @@
+/** The three uses in a real browser: see the dose of an uploaded flyby, compare options, download a report. */
+import { existsSync, mkdirSync, mkdtempSync, rmSync } from 'node:fs';
+import { createServer, type Server } from 'node:http';
+import type { AddressInfo } from 'node:net';
+import { tmpdir } from 'node:os';
+import { join } from 'node:path';
+import { fileURLToPath } from 'node:url';
+import express from 'express';
+import { pino } from 'pino';
+import { type Browser, chromium, type Page } from 'playwright-core';
+import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { openStore } from '../../db/open.ts';
+import { Shop } from '../../server/api/shop.ts';
+import { createApp } from '../../server/app.ts';
+import { readConfig } from '../../server/config.ts';
+import { Pool } from '../../server/jobs/pool.ts';
+
+const CHROMIUM = '/usr/bin/chromium';
+const CLIENT = fileURLToPath(new URL('../../.build/client/', import.meta.url));
+const READY = existsSync(CHROMIUM) && existsSync(join(CLIENT, 'index.html'));
+if (!READY) console.error(`${CHROMIUM} or the built client (npm run build) is missing: the browser tests are skipped`);
+const SHOTS = fileURLToPath(new URL('../output/', import.meta.url));
+
+describe.skipIf(!READY)('client in a browser', () => {
+  let dataDir: string;
+  let shop: Shop;
+  let pool: Pool;
+  let server: Server;
+  let browser: Browser;
+  let page: Page;
+  let base: string;
+  const outside: string[] = [];
+
+  beforeAll(async () => {
+    mkdirSync(SHOTS, { recursive: true });
+    dataDir = mkdtempSync(join(tmpdir(), 'sidelong-e2e-'));
+    pool = new Pool();
+    const store = openStore(dataDir);
+    shop = new Shop(store, dataDir, pool, (error) => console.error(error));
+    shop.studies.insert(null, 'Browser study', {
+      description: '',
+      requiredRdm: 2,
+      verdictPercentile: 95,
+      phaseTreatment: 'joint',
+      extrapolatedShareLimit: 0.5,
+      distributionMark: '',
+    });
+    const pages = express.Router();
+    pages.use(express.static(CLIENT, { index: false }));
+    pages.get('/*path', (_request, response) => response.sendFile(join(CLIENT, 'index.html')));
+    pages.get('/', (_request, response) => response.sendFile(join(CLIENT, 'index.html')));
+    const app = createApp(shop, readConfig({ DATA_DIR: dataDir }), pino({ level: 'silent' }), pages);
+    server = createServer(app);
+    await new Promise<void>((resolve) => server.listen(0, '127.0.0.1', resolve));
+    base = `http://127.0.0.1:${(server.address() as AddressInfo).port}`;
+    browser = await chromium.launch({
+      executablePath: CHROMIUM,
+      args: [
+        '--headless',
+        '--no-sandbox',
+        '--disable-gpu',
+        '--disable-quic',
+        '--no-first-run',
+        '--disable-background-networking',
+        '--disable-component-update',
+        '--disable-sync',
+      ],
+    });
+    page = await browser.newPage({ viewport: { width: 1280, height: 900 } });
+    page.on('request', (request) => {
+      if (!request.url().startsWith(base) && !request.url().startsWith('blob:')) outside.push(request.url());
+    });
+    page.on('console', (message) => {
+      if (message.type() === 'error' && /Content Security Policy/.test(message.text())) outside.push(message.text());
+    });
+  });
+
+  afterAll(async () => {
+    await browser?.close();
+    await shop?.runner.stop();
+    server?.closeAllConnections();
+    server?.close();
+    await pool?.close();
+    shop?.store.close();
+    rmSync(dataDir, { recursive: true, force: true });
+  });
+
+  it('reads an upload back before keeping it', async () => {
+    await page.goto(`${base}/trajectories`);
+    const file = fileURLToPath(new URL('../../fixtures/demo/uranus-flyby-high.oem', import.meta.url));
+    await page.setInputFiles('input[type=file]', file);
+    await page
+      .getByText(/Closest approach at/)
+      .first()
+      .waitFor();
+    await page.getByRole('button', { name: 'Keep this trajectory' }).click();
+    await page.getByRole('heading', { name: /what was read/ }).waitFor();
+    await page.getByText('Put a case together').click();
+    await page.locator('details[open] input[name=name]').fill('One flyby');
+    await page.locator('details[open] input[inputmode=numeric]').fill('1');
+    await page.getByRole('button', { name: 'Make case' }).click();
+    await page.getByText('One flyby').first().waitFor();
+    await page.screenshot({ path: join(SHOTS, 'trajectories.png'), fullPage: true });
+  });
+
+  it('shows a refusal with its line', async () => {
+    const broken = fileURLToPath(new URL('../../fixtures/malformed/', import.meta.url));
+    const { readdirSync } = await import('node:fs');
+    const bad = readdirSync(broken).find((name) => name.endsWith('.oem') && !name.startsWith('good'));
+    await page.goto(`${base}/trajectories`);
+    await page.setInputFiles('input[type=file]', join(broken, bad!));
+    await page.getByRole('alert').first().waitFor();
+  });
+
+  it('builds two shields and compares them', async () => {
+    await page.goto(`${base}/shielding`);
+    for (const [name, mm] of [
+      ['Thin', '0.5'],
+      ['Thick', '4'],
+    ]) {
+      await page.getByText('Build a stack').click();
+      await page.locator('details[open] input').first().fill(name);
+      await page.getByLabel('Thickness').fill(mm);
+      await page.getByRole('button', { name: 'Make stack' }).click();
+      await page.getByRole('heading', { name, exact: true }).waitFor();
+      await page.goto(`${base}/shielding`);
+    }
+    for (const name of ['Thin', 'Thick']) {
+      await page.getByText('Put an option together').click();
+      await page.locator('details[open] input[name=name]').fill(`${name} walls`);
+      await page.locator('details[open] select').selectOption({ label: name });
+      await page.getByRole('button', { name: 'Make option' }).click();
+      await page.getByRole('heading', { name: `${name} walls` }).waitFor();
+      await page.goto(`${base}/shielding`);
+    }
+    await page.screenshot({ path: join(SHOTS, 'shielding.png'), fullPage: true });
+    await page.goto(`${base}/parts`);
+    await page.locator('textarea').fill('partId,name,placeId,capabilityKradSi\nU1,Memory,deck,20\n');
+    await page.getByRole('button', { name: 'Add these parts' }).click();
+    await page.getByRole('cell', { name: 'Memory' }).waitFor();
+    await page.goto(`${base}/margins`);
+    await page.getByText('New assessment').click();
+    await page.getByRole('button', { name: 'Assess' }).click();
+    await page.getByRole('heading', { name: 'Dose behind each shield' }).waitFor({ timeout: 240_000 });
+    await page.screenshot({ path: join(SHOTS, 'margins.png'), fullPage: true });
+    await page.emulateMedia({ colorScheme: 'dark' });
+    await page.setViewportSize({ width: 900, height: 1100 });
+    await page.screenshot({ path: join(SHOTS, 'margins-dark.png'), fullPage: true });
+    await page.emulateMedia({ colorScheme: 'light' });
+    await page.setViewportSize({ width: 1280, height: 900 });
+    expect(await page.getByRole('row', { name: /Thick walls/ }).count()).toBeGreaterThan(0);
+  }, 300_000);
+
+  it('issues a report and downloads it', async () => {
+    await page.goto(`${base}/reports`);
+    await page.getByRole('button', { name: 'Issue' }).click();
+    const link = page.getByRole('link', { name: /SL-001/ });
+    await link.waitFor({ timeout: 60_000 });
+    const answer = await page.request.get(base + (await link.getAttribute('href')));
+    expect((await answer.body()).subarray(0, 5).toString()).toBe('%PDF-');
+    await page.screenshot({ path: join(SHOTS, 'reports.png'), fullPage: true });
+  }, 90_000);
+
+  it('has no violation of WCAG rules on any page, and asks nothing of other hosts', async () => {
+    const { createRequire } = await import('node:module');
+    const axe = createRequire(import.meta.url).resolve('axe-core/axe.min.js');
+    const context = await browser.newContext({ bypassCSP: true, viewport: { width: 1280, height: 900 } });
+    const checked = await context.newPage();
+    const found: string[] = [];
+    for (const path of ['trajectories', 'environment', 'shielding', 'parts', 'margins', 'reports', 'about']) {
+      await checked.goto(`${base}/${path}`);
+      await checked.getByRole('heading', { level: 1 }).waitFor();
+      await checked.waitForTimeout(400);
+      await checked.addScriptTag({ path: axe });
+      const violations = (await checked.evaluate(
+        'axe.run(document, { runOnly: ["wcag2a", "wcag2aa", "wcag21aa", "wcag22aa"] }).then((r) => r.violations.map((v) => v.id + ": " + v.nodes.map((n) => n.html).join(" | ").slice(0, 300)))',
+      )) as string[];
+      found.push(...violations.map((violation) => `${path}: ${violation}`));
+    }
+    await context.close();
+    expect(found).toEqual([]);
+    expect(outside).toEqual([]);
+  }, 120_000);
+});
