@@ -6,8 +6,8 @@ import { CROSSING, DAMAGE, DIRECT, ELECTRON, FROM_PHOTONS, Kernel } from '../tra
 import { protonResponse } from '../transport/protons.ts';
 import { GY_PER_MEV_PER_G } from '../units.ts';
 import { ENGINE_VERSION } from '../version.ts';
-import { slabTransport, TARGET_MM } from './responsePlan.ts';
-import { describeStack, normaliseStack } from './stack.ts';
+import { sphereRadiusCm, TARGET_MM, transportOf } from './responsePlan.ts';
+import { describeStack, normaliseStack, type Stack } from './stack.ts';
 import type { EffortClass, ShieldResponse, StackInput, TargetMaterialId } from './types.ts';
 
 export interface ResponseOptions {
@@ -64,11 +64,11 @@ function historiesOf(bin: number, full: number): number {
 }
 
 function refuseUnsupported(stack: StackInput): void {
-  if (stack.geometry === 'slab') return;
+  if (stack.geometry !== 'shell') return;
   throw new AppError(
     'RESPONSE_UNSUPPORTED',
-    `Electrons are carried through slabs only; geometry "${stack.geometry}" has no electron response. Give the stack as a slab.`,
-    [{ pointer: '#/geometry', detail: 'no electron response for this geometry', got: stack.geometry, limit: 'slab' }],
+    'Electrons are carried through slabs and solid spheres; geometry "shell" has no electron response. Give the stack as a solid sphere or as a slab.',
+    [{ pointer: '#/geometry', detail: 'no electron response for this geometry', got: 'shell', limit: 'slab, sphere' }],
   );
 }
 
@@ -78,7 +78,7 @@ export function runShard(task: ShardTask): ShardTally {
   for (const [index, bin] of task.bins.entries()) {
     const low = ELECTRON_EDGES_MEV[bin];
     const ratio = Math.log(ELECTRON_EDGES_MEV[bin + 1] / low);
-    const { geometry, options } = slabTransport(task.stack, task.targetMaterialId, low * Math.exp(ratio / 2));
+    const { geometry, options } = transportOf(task.stack, task.targetMaterialId, low * Math.exp(ratio / 2));
     const kernel = new Kernel(geometry, options);
     const { generator, score } = kernel;
     generator.start(task.seed, bin, 0);
@@ -117,8 +117,8 @@ export function finishResponse(
     transmittedSigma: new Float64Array(BINS),
     damageMeVCm2PerG: new Float64Array(BINS),
   };
-  // A unit 4π-integrated fluence crosses the outer face 1/4 times per cm².
-  const toGy = (0.25 * GY_PER_MEV_PER_G) / sizeGPerCm2;
+  const { perGram, perArea } = perFluence(checked, target.densityGPerCm3);
+  const toGy = perGram * GY_PER_MEV_PER_G;
   for (const { bins, histories, sums } of tallies) {
     for (const [index, bin] of bins.entries()) {
       const at = index * TALLY_COLUMNS;
@@ -129,23 +129,36 @@ export function finishResponse(
       electron.doseSigmaGyCm2[bin] = toGy * sigma(0);
       electron.bremsstrahlungGyCm2[bin] = (toGy * sums[at + 2]) / n;
       electron.bremsstrahlungSigmaGyCm2[bin] = toGy * sigma(2);
-      electron.transmitted[bin] = (0.25 * sums[at + 4]) / n;
-      electron.transmittedSigma[bin] = 0.25 * sigma(4);
-      electron.damageMeVCm2PerG[bin] = (0.25 * sums[at + 6]) / (n * sizeGPerCm2);
+      electron.transmitted[bin] = (perArea * sums[at + 4]) / n;
+      electron.transmittedSigma[bin] = perArea * sigma(4);
+      electron.damageMeVCm2PerG[bin] = (perGram * sums[at + 6]) / n;
     }
   }
-  const proton = protonResponse('slab', checked.layers, target, sizeGPerCm2);
+  const proton = protonResponse(checked.geometry === 'slab' ? 'slab' : 'sphere', checked.layers, target, sizeGPerCm2);
   return {
     sha256: responseKey(stack, options),
     engineVersion: ENGINE_VERSION,
     effort: options.effort,
     targetMaterialId: options.targetMaterialId,
     description:
-      `${describeStack(checked)}; target ${TARGET_MM} mm of ${options.targetMaterialId} behind it; ` +
-      'isotropic fluence on the outer face, slant paths carried as they are',
+      checked.geometry === 'slab'
+        ? `${describeStack(checked)}; target ${TARGET_MM} mm of ${options.targetMaterialId} behind it; isotropic fluence on the outer face, slant paths carried as they are`
+        : `${describeStack(checked)}; target a ball of ${options.targetMaterialId} of ${TARGET_MM} mm radius at its centre; isotropic fluence, electrons carried as they scatter, protons straight ahead`,
     electron,
     proton,
     notices: ['Protons slow down along straight paths; nuclear reactions are not included.'],
+  };
+}
+
+/** What a sum per history becomes per unit 4π-integrated fluence: per gram of the target, and per cm² of its surface. */
+function perFluence(stack: Stack, targetDensityGPerCm3: number): { perGram: number; perArea: number } {
+  const size = 0.1 * TARGET_MM;
+  // A unit fluence crosses a plane face 1/4 times per cm², and enters a sphere πR² times.
+  if (stack.geometry === 'slab') return { perGram: 0.25 / (size * targetDensityGPerCm3), perArea: 0.25 };
+  const entering = Math.PI * sphereRadiusCm(stack) ** 2;
+  return {
+    perGram: entering / ((4 / 3) * Math.PI * size ** 3 * targetDensityGPerCm3),
+    perArea: entering / (4 * Math.PI * size ** 2),
   };
 }
 

@@ -1,6 +1,6 @@
 import { electronCsdaRange, type Material, material } from '../matter/index.ts';
 import type { TransportGeometry, TransportLayer, TransportOptions } from '../transport/geometry.ts';
-import { normaliseStack } from './stack.ts';
+import { normaliseStack, type Stack } from './stack.ts';
 import type { StackInput, TargetMaterialId } from './types.ts';
 
 /** Target: a layer this thick behind slabs, a ball of this radius at the centre of spheres and shells, mm. */
@@ -23,12 +23,73 @@ interface Piece {
 }
 
 /** What the histories of one electron bin run through, and with which cuts. */
-export function slabTransport(
+export function transportOf(
   stack: StackInput,
   target: TargetMaterialId,
   energyMeV: number,
 ): { geometry: TransportGeometry; options: TransportOptions } {
-  const { layers, backing, arealDensityGPerCm2: total } = normaliseStack(stack);
+  const checked = normaliseStack(stack);
+  return checked.geometry === 'slab'
+    ? slabTransport(checked, target, energyMeV)
+    : sphereTransport(checked, target, energyMeV);
+}
+
+/** Outer radius of a solid sphere about its target, cm. */
+export function sphereRadiusCm(stack: Stack): number {
+  return 0.1 * (TARGET_MM + stack.layers.reduce((sum, layer) => sum + layer.thicknessMm, 0));
+}
+
+/**
+ * A solid sphere about a ball of target. Shells at radii that double from the ball outward are four times less important
+ * each, as their surfaces are four times larger: the few particles that head for the centre are split on their way.
+ */
+function sphereTransport(
+  { layers, arealDensityGPerCm2: total }: Stack,
+  target: TargetMaterialId,
+  energyMeV: number,
+): { geometry: TransportGeometry; options: TransportOptions } {
+  const of = material(target);
+  const ball = 0.1 * TARGET_MM;
+  const outer = ball + 0.1 * layers.reduce((sum, layer) => sum + layer.thicknessMm, 0);
+  const radii: number[] = [];
+  for (let radius = 2 * ball; radius < 0.75 * outer; radius *= 2) radii.push(radius);
+  const importanceAt = (radius: number) => 4 ** radii.filter((mark) => mark > radius).length;
+  const transport: TransportLayer[] = [
+    { material: of, thickness: ball, importance: importanceAt(0), forcing: TARGET_FORCING },
+  ];
+  let bottom = ball;
+  let depth = 0;
+  for (const layer of [...layers].reverse()) {
+    const density = layer.material.densityGPerCm3;
+    const top = bottom + 0.1 * layer.thicknessMm;
+    const zone = bottom + (ZONE_G_PER_CM2 - depth) / density;
+    const inside = [...radii, zone].filter((at) => at > bottom * (1 + 1e-9) && at < top * (1 - 1e-9));
+    let from = bottom;
+    for (const cut of [...inside.sort((a, b) => a - b), top]) {
+      const middle = 0.5 * (from + cut);
+      transport.push({
+        material: layer.material,
+        thickness: cut - from,
+        importance: importanceAt(middle),
+        forcing: middle < zone ? ZONE_FORCING : 1,
+      });
+      from = cut;
+    }
+    depth += layer.arealDensityGPerCm2;
+    bottom = top;
+  }
+  const reaches = electronCsdaRange(layers[0].material, energyMeV) > 0.8 * total;
+  return {
+    geometry: { spherical: true, layers: transport, target: 0 },
+    options: { ...cutsFor(energyMeV), photons: true, survival: 0.25, photonSplit: reaches ? 2 : 8, bins: 0 },
+  };
+}
+
+function slabTransport(
+  { layers, backing, arealDensityGPerCm2: total }: Stack,
+  target: TargetMaterialId,
+  energyMeV: number,
+): { geometry: TransportGeometry; options: TransportOptions } {
   const pieces: Piece[] = layers.map((layer) => ({ material: layer.material, thickness: layer.arealDensityGPerCm2 }));
   const outermost = pieces[0].material;
   const rangeRatio = electronCsdaRange(outermost, energyMeV) / total;
