@@ -6,7 +6,7 @@ import { CROSSING, DAMAGE, DIRECT, ELECTRON, FROM_PHOTONS, Kernel } from '../tra
 import { protonResponse } from '../transport/protons.ts';
 import { GY_PER_MEV_PER_G } from '../units.ts';
 import { ENGINE_VERSION } from '../version.ts';
-import { sphereRadiusCm, TARGET_MM, transportOf } from './responsePlan.ts';
+import { aimAtCentre, sphereRadiusCm, TARGET_MM, transportOf } from './responsePlan.ts';
 import { describeStack, normaliseStack, type Stack } from './stack.ts';
 import type { EffortClass, ShieldResponse, StackInput, TargetMaterialId } from './types.ts';
 
@@ -39,6 +39,8 @@ const BINS = ELECTRON_EDGES_MEV.length - 1;
 const SHARDS = 30;
 /** Histories of a bin; bins above the knee of their cost get fewer, see `historiesOf`. */
 const HISTORIES: Readonly<Record<EffortClass, number>> = { standard: 3000, fine: 40_000 };
+/** Spheres have a target a thousandth of the size: their histories are cheaper and tell less. */
+const SPHERE_FACTOR = 3;
 /** Above this energy the cost of a history grows while belts thin out, MeV. */
 const FULL_BELOW_MEV = 8;
 
@@ -52,9 +54,10 @@ export function planResponse(stack: StackInput, options: ResponseOptions): Shard
   normaliseStack(stack);
   refuseUnsupported(stack);
   const { targetMaterialId, seed, effort } = options;
+  const full = HISTORIES[effort] * (stack.geometry === 'sphere' ? SPHERE_FACTOR : 1);
   return Array.from({ length: SHARDS }, (_, shard) => {
     const bins = Array.from({ length: BINS }, (_, bin) => bin).filter((bin) => bin % SHARDS === shard);
-    return { stack, targetMaterialId, seed, bins, histories: bins.map((bin) => historiesOf(bin, HISTORIES[effort])) };
+    return { stack, targetMaterialId, seed, bins, histories: bins.map((bin) => historiesOf(bin, full)) };
   });
 }
 
@@ -75,6 +78,8 @@ function refuseUnsupported(stack: StackInput): void {
 /** Runs the histories of one shard. */
 export function runShard(task: ShardTask): ShardTally {
   const sums = new Float64Array(task.bins.length * TALLY_COLUMNS);
+  const aim = new Float64Array(2);
+  const epsilon = (0.1 * TARGET_MM) ** 2 / sphereRadiusCm(normaliseStack(task.stack)) ** 2;
   for (const [index, bin] of task.bins.entries()) {
     const low = ELECTRON_EDGES_MEV[bin];
     const ratio = Math.log(ELECTRON_EDGES_MEV[bin + 1] / low);
@@ -86,7 +91,10 @@ export function runShard(task: ShardTask): ShardTally {
     for (let i = 0; i < task.histories[index]; i++) {
       const energy = low * Math.exp(ratio * generator.next());
       // Isotropic fluence: crossings of the outer face follow the cosine law.
-      kernel.history(ELECTRON, energy, Math.sqrt(generator.next()));
+      if (geometry.spherical) {
+        aimAtCentre(epsilon, generator.next(), generator.next(), aim);
+        kernel.history(ELECTRON, energy, aim[0], aim[1]);
+      } else kernel.history(ELECTRON, energy, Math.sqrt(generator.next()));
       sums[at] += score[DIRECT];
       sums[at + 1] += score[DIRECT] ** 2;
       sums[at + 2] += score[FROM_PHOTONS];
@@ -146,7 +154,12 @@ export function finishResponse(
         : `${describeStack(checked)}; target a ball of ${options.targetMaterialId} of ${TARGET_MM} mm radius at its centre; isotropic fluence, electrons carried as they scatter, protons straight ahead`,
     electron,
     proton,
-    notices: ['Protons slow down along straight paths; nuclear reactions are not included.'],
+    notices: [
+      'Protons slow down along straight paths; nuclear reactions are not included.',
+      ...(checked.geometry === 'sphere'
+        ? ['Spheres carry larger statistical errors than slabs, above all where only bremsstrahlung is left.']
+        : []),
+    ],
   };
 }
 

@@ -134,8 +134,9 @@ export class Kernel {
    * One history of a particle that enters from outside; `score` and the bins then hold it alone.
    *
    * @param cosine - cosine to the inward normal, in (0, 1]
+   * @param weight - of the particle, when the source draws it more or less often than in nature
    */
-  history(kind: number, energyMeV: number, cosine: number): void {
+  history(kind: number, energyMeV: number, cosine: number, weight = 1): void {
     this.score.fill(0);
     if (this.options.bins > 0) {
       this.binEnergy.fill(0);
@@ -144,8 +145,8 @@ export class Kernel {
     const last = this.layerCount - 1;
     this.countPhotons = kind === PHOTON;
     this.depth = 0;
-    if (this.spherical) this.push(kind, this.bounds[last + 1], -cosine, energyMeV, 1, last, 0, 0);
-    else this.push(kind, 0, cosine, energyMeV, 1, 0, 0, 0);
+    if (this.spherical) this.push(kind, this.bounds[last + 1], -cosine, energyMeV, weight, last, 0, 0);
+    else this.push(kind, 0, cosine, energyMeV, weight, 0, 0, 0);
     while (this.depth > 0) {
       this.depth -= 1;
       if (this.stackInt[4 * this.depth] === PHOTON) this.followPhoton(this.depth);
