@@ -5,7 +5,7 @@ import { type BeamCase, runBeam } from '../transport/beam.ts';
 try {
   const text = process.argv[2];
   if (text === undefined) throw new AppError('BEAM_INVALID', 'Give the case as one argument of JSON.');
-  console.log(JSON.stringify(runBeam(JSON.parse(text) as BeamCase)));
+  console.log(JSON.stringify(runBeam(JSON.parse(text) as BeamCase, () => performance.now())));
 } catch (error) {
   if (!(error instanceof AppError) && !(error instanceof SyntaxError)) throw error;
   console.error(error.message);

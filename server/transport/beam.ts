@@ -68,7 +68,7 @@ const CUT_LIMITS_MEV = [0.005, 0.05] as const;
  * @param clockMs - a clock for the two timings
  * @throws {AppError} BEAM_INVALID naming each field outside its limits; MATERIAL_UNKNOWN
  */
-export function runBeam(input: BeamCase, clockMs: () => number = () => performance.now()): BeamResult {
+export function runBeam(input: BeamCase, clockMs: () => number): BeamResult {
   const layers = checkedLayers(input);
   const { particle, energyMeV, incidence, bins, histories, seed } = input;
   const cosine = incidence === 'cosine' ? 0 : Math.cos(incidence.angleDeg * RADIAN_PER_DEG);

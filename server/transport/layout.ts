@@ -11,9 +11,7 @@ export const SOFT_2 = 7;
 export const RANGE = 8;
 export const ELECTRON_COLUMNS = 9;
 
-export const PHOTON_TOTAL = 0;
-export const PHOTON_COMPTON = 1;
-export const PHOTON_PAIR = 2;
+/** Total, Compton, pair; the rest is photoelectric. */
 export const PHOTON_COLUMNS = 3;
 
 export const ELASTIC_QUANTILES = 129;

@@ -3,6 +3,7 @@
  * single precision, the fraction its other bits, so that a look-up needs neither logarithm nor search.
  */
 const ROWS_PER_OCTAVE = 16;
+/** The tables span 2^−10 to 2^7 MeV. */
 const LOWEST_EXPONENT = -10;
 const HIGHEST_EXPONENT = 7;
 
@@ -13,8 +14,6 @@ export const FRACTION_MASK = 0x7ffff;
 export const FRACTION_SCALE = 1 / 0x80000;
 /** Rows including the closing one. */
 export const ROW_COUNT = (HIGHEST_EXPONENT - LOWEST_EXPONENT) * ROWS_PER_OCTAVE + 1;
-/** Energies the tables span, MeV: 2^−10 to 2^7. */
-export const TABLE_RANGE_MEV = [2 ** LOWEST_EXPONENT, 2 ** HIGHEST_EXPONENT] as const;
 
 export function rowEnergyMeV(row: number): number {
   const octave = Math.floor(row / ROWS_PER_OCTAVE);

@@ -7,7 +7,7 @@ import {
   photonCrossSections,
 } from '../../../server/matter/index.ts';
 import { PROTON_EDGES_MEV } from '../../../server/numeric/spectrumGrid.ts';
-import { type BeamCase, runBeam } from '../../../server/transport/beam.ts';
+import { type BeamCase, runBeam as runTimedBeam } from '../../../server/transport/beam.ts';
 import {
   ACCOUNTED,
   DIRECT,
@@ -30,6 +30,7 @@ const BEAM: BeamCase = {
   seed: 5,
   photons: true,
 };
+const runBeam = (input: BeamCase) => runTimedBeam(input, () => performance.now());
 /** Sums of doubles over a history: the balance of a followed history closes to rounding. */
 const BALANCE = 1e-9;
 const SIGMAS = 4;
