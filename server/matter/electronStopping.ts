@@ -7,8 +7,6 @@ import type { Material, SternheimerFit } from './types.ts';
 export const ELECTRON_REST_MEV = 0.51099895;
 /** 2π N_A r_e² m_e c², MeV cm²/mol (CODATA 2018: 0.3070749 / 2). */
 export const TWO_PI_NA_RE2_MC2 = 0.15353746;
-/** Kinetic energies for which the electron data hold, MeV. */
-export const ELECTRON_ENERGY_RANGE_MEV = [0.01, 1000] as const;
 
 /** Density effect δ at βγ; Sternheimer's form. */
 export function densityEffect(fit: SternheimerFit, betaGamma: number): number {

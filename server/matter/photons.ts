@@ -11,8 +11,6 @@ interface PhotonRow {
 
 const DATA = readReferenceJson<Readonly<Record<string, PhotonRow>>>('photon', 'photon.json');
 
-export const PHOTON_ENERGY_RANGE_MEV = [0.001, 100] as const;
-
 /** Mass attenuation by process, cm²/g. */
 export interface PhotonCrossSections {
   photo: number;

@@ -37,6 +37,7 @@ export const purpose: Section = (flow, { result }) => {
 export const summary: Section = (flow, { result }) => {
   const n = names(result);
   const { summary } = result;
+  flow.newPage();
   flow.heading(1, 'Result in one page');
   const counts = summary.verdictCounts;
   flow.paragraph(
@@ -91,7 +92,7 @@ export const assumptions: Section = (flow, { result }) => {
     'The flux is taken isotropic at the shield; an oriented one-sided shield can see up to twice as much.',
     'Nominal doses use median belts and the nominal rotation phase; bands come from drawing belts, rotation phase, field model and statistical error together. The lot of a part is drawn from its predictive distribution.',
     'Each place is shielded by the stack named for it, on all sides that matter, with nothing else in the way.',
-    ...result.notices.map((notice) => notice.text),
+    ...new Set(result.notices.map((notice) => notice.text)),
   ]);
 };
 
@@ -223,10 +224,10 @@ export const doses: Section = (flow, { result }) => {
       { header: '5 %', weight: 1, align: 'right' },
       { header: '50 %', weight: 1, align: 'right' },
       { header: '95 %', weight: 1, align: 'right' },
-      { header: 'Electrons', weight: 0.9, align: 'right' },
-      { header: 'Brems- strahlung', weight: 0.9, align: 'right' },
-      { header: 'Protons', weight: 0.9, align: 'right' },
-      { header: 'Extra- polated', weight: 0.9, align: 'right' },
+      { header: 'Electrons', weight: 1.15, align: 'right' },
+      { header: 'Photons', weight: 1, align: 'right' },
+      { header: 'Protons', weight: 1.05, align: 'right' },
+      { header: 'Not measured', weight: 1.15, align: 'right' },
     ],
     size: 7.2,
     rows: result.shieldDose.map((row) => {
@@ -246,7 +247,7 @@ export const doses: Section = (flow, { result }) => {
         percent(row.extrapolatedFraction),
       ];
     }),
-    note: 'Shares of the nominal dose. Extrapolated: share of the belt dose from where nothing was measured. The dose carries no margin. Source: this assessment.',
+    note: 'Shares of the nominal dose; photons are the bremsstrahlung of the electrons. Not measured: share of the belt dose from where nothing was measured. The dose carries no margin. Source: this assessment.',
   });
 };
 
@@ -271,15 +272,15 @@ export const margins: Section = (flow, { result }) => {
     drawTable(flow, {
       caption: `Margins with ${option.name}`,
       columns: [
-        { header: 'Part', weight: 2 },
+        { header: 'Part', weight: 1.9 },
         { header: 'Case', weight: 1.9 },
-        { header: 'Capability, krad(Si)', weight: 1.1, align: 'right' },
-        { header: 'Dose 50 %, krad(Si)', weight: 1.1, align: 'right' },
-        { header: 'Dose 95 %, krad(Si)', weight: 1.1, align: 'right' },
-        { header: 'Required', weight: 0.9, align: 'right' },
-        { header: 'Achieved 50 %', weight: 1, align: 'right' },
-        { header: 'Achieved 95 %', weight: 1, align: 'right' },
-        { header: 'P(margin met)', weight: 0.9, align: 'right' },
+        { header: 'Capability, krad(Si)', weight: 1.35, align: 'right' },
+        { header: 'Dose 50 %, krad(Si)', weight: 1.2, align: 'right' },
+        { header: 'Dose 95 %, krad(Si)', weight: 1.2, align: 'right' },
+        { header: 'Required', weight: 1.15, align: 'right' },
+        { header: 'Achieved 50 %', weight: 1.2, align: 'right' },
+        { header: 'Achieved 95 %', weight: 1.2, align: 'right' },
+        { header: 'P(margin met)', weight: 1, align: 'right' },
         { header: 'Verdict', weight: 1.6 },
       ],
       size: 7.2,

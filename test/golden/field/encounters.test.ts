@@ -6,6 +6,7 @@ import { readFileSync } from 'node:fs';
 import { describe, expect, it } from 'vitest';
 import { bytesOf } from '../../../server/ephemeris/index.ts';
 import { fieldModel, makeLabel, tracedLabeller } from '../../../server/field/index.ts';
+import { URANUS_Q3_WITH_EXTERNAL } from '../../../server/field/models.ts';
 import { bodyAxesInto, ROTATION_MODELS, rotateInto } from '../../../server/frames/rotation.ts';
 import { parseEpoch } from '../../../server/time/index.ts';
 import { readTrajectory } from '../../../server/trajectory/index.ts';
@@ -44,6 +45,16 @@ describe('the encounter of 1986', () => {
     expect(Math.abs(largest - 412.65)).toBeLessThan(0.3);
     expect(Math.abs(when - parseEpoch('1986-01-24T17:53:30', 'UTC'))).toBeLessThan(30);
     expect(Math.abs(leastL - 4.642)).toBeLessThan(0.005);
+  });
+
+  it('moves the least L to 4.645 with the uniform external field of the same fit', () => {
+    const withExternal = tracedLabeller(URANUS_Q3_WITH_EXTERNAL);
+    let leastL = Number.POSITIVE_INFINITY;
+    for (let t = from; t <= to; t += 10) {
+      at(t);
+      leastL = Math.min(leastL, withExternal.labelInto(body[0], body[1], body[2], label).lShell);
+    }
+    expect(Math.abs(leastL - 4.645)).toBeLessThan(0.001);
   });
 
   it('would show west longitude taken for east', () => {
