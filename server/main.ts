@@ -1,16 +1,14 @@
-import { existsSync } from 'node:fs';
 import { createServer } from 'node:http';
 import { fileURLToPath } from 'node:url';
-import express from 'express';
+import type express from 'express';
 import { pino } from 'pino';
 import { openStore } from '../db/open.ts';
 import { Shop } from './api/shop.ts';
 import { createApp } from './app.ts';
+import { builtClient } from './clientPages.ts';
 import { readConfig } from './config.ts';
 import { seedDemo } from './demo.ts';
 import { Pool } from './jobs/pool.ts';
-
-const CLIENT = fileURLToPath(new URL('../.build/client/', import.meta.url));
 
 /** Serves the REST service and the client on one port. `--dev` builds the client on the fly instead of from .build. */
 async function main(): Promise<void> {
@@ -43,20 +41,6 @@ async function main(): Promise<void> {
   };
   process.on('SIGTERM', stop);
   process.on('SIGINT', stop);
-}
-
-function builtClient(): express.RequestHandler {
-  const router = express.Router();
-  router.use(express.static(CLIENT, { index: false, maxAge: '1h', immutable: true }));
-  router.get('/*path', (_request, response) => sendIndex(response));
-  router.get('/', (_request, response) => sendIndex(response));
-  return router;
-}
-
-function sendIndex(response: express.Response): void {
-  const index = `${CLIENT}index.html`;
-  if (existsSync(index)) response.setHeader('Cache-Control', 'no-cache').sendFile(index);
-  else response.status(503).type('text').send('The client is not built; run npm start, or npm run build.');
 }
 
 async function devClient(): Promise<express.RequestHandler> {

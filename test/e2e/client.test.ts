@@ -5,19 +5,18 @@ import type { AddressInfo } from 'node:net';
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
 import { fileURLToPath } from 'node:url';
-import express from 'express';
 import { pino } from 'pino';
 import { type Browser, chromium, type Page } from 'playwright-core';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { openStore } from '../../db/open.ts';
 import { Shop } from '../../server/api/shop.ts';
 import { createApp } from '../../server/app.ts';
+import { BUILT_CLIENT, builtClient } from '../../server/clientPages.ts';
 import { readConfig } from '../../server/config.ts';
 import { Pool } from '../../server/jobs/pool.ts';
 
 const CHROMIUM = '/usr/bin/chromium';
-const CLIENT = fileURLToPath(new URL('../../.build/client/', import.meta.url));
-const READY = existsSync(CHROMIUM) && existsSync(join(CLIENT, 'index.html'));
+const READY = existsSync(CHROMIUM) && existsSync(join(BUILT_CLIENT, 'index.html'));
 if (!READY) console.error(`${CHROMIUM} or the built client (npm run build) is missing: the browser tests are skipped`);
 const SHOTS = fileURLToPath(new URL('../output/', import.meta.url));
 
@@ -45,11 +44,7 @@ describe.skipIf(!READY)('client in a browser', () => {
       extrapolatedShareLimit: 0.5,
       distributionMark: '',
     });
-    const pages = express.Router();
-    pages.use(express.static(CLIENT, { index: false }));
-    pages.get('/*path', (_request, response) => response.sendFile(join(CLIENT, 'index.html')));
-    pages.get('/', (_request, response) => response.sendFile(join(CLIENT, 'index.html')));
-    const app = createApp(shop, readConfig({ DATA_DIR: dataDir }), pino({ level: 'silent' }), pages);
+    const app = createApp(shop, readConfig({ DATA_DIR: dataDir }), pino({ level: 'silent' }), builtClient());
     server = createServer(app);
     await new Promise<void>((resolve) => server.listen(0, '127.0.0.1', resolve));
     base = `http://127.0.0.1:${(server.address() as AddressInfo).port}`;
