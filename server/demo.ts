@@ -2,8 +2,9 @@ import { readFileSync } from 'node:fs';
 import { startAssessment } from './api/assessments.ts';
 import { assessmentBody } from './api/schemas.ts';
 import type { Shop, TrajectoryBody } from './api/shop.ts';
+import { readReference } from './constants/reference.ts';
 import type { PartInput } from './margin/index.ts';
-import type { StackInput } from './shielding/types.ts';
+import type { ShieldResponse, StackInput } from './shielding/types.ts';
 
 const DEMO = new URL('../fixtures/demo/', import.meta.url);
 
@@ -46,6 +47,9 @@ export async function seedDemo(shop: Shop): Promise<{ studyId: string; assessmen
       return { key, name, sha256, read };
     }),
   );
+  for (const [key, response] of Object.entries(shippedResponses())) {
+    if (shop.artefacts.path(key) === null) shop.artefacts.put(key, 'response', response);
+  }
   return shop.store.transaction(() => {
     const { name, ...study } = demo.study;
     const studyId = shop.studies.insert(null, name, study).id;
@@ -90,4 +94,12 @@ export async function seedDemo(shop: Shop): Promise<{ studyId: string; assessmen
     );
     return { studyId, assessmentId: id };
   })();
+}
+
+/** Responses of the demo's shields, computed ahead under the keys the service would give them. */
+export function shippedResponses(): Record<string, ShieldResponse> {
+  return JSON.parse(readReference('responses-demo', 'responses.json').text, (_field, value: unknown) => {
+    const array = (value as { float64?: number[] } | null)?.float64;
+    return array === undefined ? value : Float64Array.from(array);
+  }) as Record<string, ShieldResponse>;
 }
