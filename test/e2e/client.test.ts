@@ -130,7 +130,9 @@ describe.skipIf(!READY)('client in a browser', () => {
     }
     await page.screenshot({ path: join(SHOTS, 'shielding.png'), fullPage: true });
     await page.goto(`${base}/parts`);
-    await page.locator('textarea').fill('partId,name,placeId,capabilityKradSi\nU1,Memory,deck,20\n');
+    await page
+      .locator('textarea')
+      .fill('partId,name,placeId,capabilityKradSi,capabilityBasis\nU1,Memory,deck,20,test\n');
     await page.getByRole('button', { name: 'Add these parts' }).click();
     await page.getByRole('cell', { name: 'Memory' }).waitFor();
     await page.goto(`${base}/margins`);
