@@ -134,7 +134,7 @@ describe.skipIf(!READY)('client in a browser', () => {
       .locator('textarea')
       .fill('partId,name,placeId,capabilityKradSi,capabilityBasis\nU1,Memory,deck,20,test\n');
     await page.getByRole('button', { name: 'Add these parts' }).click();
-    await page.getByRole('cell', { name: 'Memory' }).waitFor();
+    await page.getByRole('cell', { name: 'Memory', exact: true }).waitFor();
     await page.goto(`${base}/margins`);
     await page.getByText('New assessment').click();
     await page.getByRole('button', { name: 'Assess' }).click();
