@@ -1,0 +1,94 @@
+import { readFileSync } from 'node:fs';
+import request from 'supertest';
+import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { startService, type TestService } from './service.ts';
+
+const CANCEL_LIMIT_MS = 1000;
+let service: TestService;
+let body: object;
+
+beforeAll(async () => {
+  service = startService();
+  const { id: studyId } = (await request(service.app).post('/api/studies').send({ name: 'Jobs' })).body;
+  const oem = readFileSync(new URL('../../fixtures/demo/uranus-flyby-high.oem', import.meta.url));
+  const trajectory = await request(service.app)
+    .post('/api/trajectories')
+    .field('studyId', studyId)
+    .attach('file', oem, 'path.oem');
+  const stack = await request(service.app)
+    .post('/api/stacks')
+    .send({ studyId, name: 'Thin', geometry: 'slab', layers: [{ materialId: 'Al', thicknessMm: 0.3 }] });
+  await request(service.app)
+    .post('/api/parts')
+    .send({ studyId, partId: 'A', name: '=SUM(1)', placeId: 'all', capabilityKradSi: 5, capabilityBasis: 'test' });
+  body = {
+    studyId,
+    name: 'Assessment',
+    trajectoryIds: [trajectory.body.id],
+    stackIds: [stack.body.id],
+    environment: { phase: { mode: 'published' } },
+    sampling: { draws: 200, seed: 3 },
+  };
+});
+afterAll(() => service.stop());
+
+async function until(path: string, wanted: (state: string) => boolean): Promise<Record<string, unknown>> {
+  for (;;) {
+    const answer = await request(service.app).get(path);
+    if (wanted(answer.body.state as string)) return answer.body as Record<string, unknown>;
+    await new Promise((resolve) => setTimeout(resolve, 40));
+  }
+}
+const ended = (state: string) => state !== 'queued' && state !== 'running';
+
+describe('jobs', () => {
+  it('cancels a running assessment within a second and has no result then', async () => {
+    const made = await request(service.app).post('/api/assessments').send(body);
+    expect(made.status).toBe(202);
+    await until(`/api/jobs/${made.body.jobId}`, (state) => state === 'running');
+    const started = Date.now();
+    await request(service.app).post(`/api/jobs/${made.body.jobId}/cancel`);
+    const job = await until(`/api/jobs/${made.body.jobId}`, ended);
+    expect(job.state).toBe('cancelled');
+    expect(Date.now() - started).toBeLessThan(CANCEL_LIMIT_MS);
+    const result = await request(service.app).get(`/api/assessments/${made.body.id}/result.json`);
+    expect(result.body.code).toBe('CONFLICT');
+  });
+
+  it('takes up what an interrupted process left, and gives the same numbers again', async () => {
+    const first = await request(service.app).post('/api/assessments').send(body);
+    await until(`/api/jobs/${first.body.jobId}`, ended);
+    const again = await request(service.app).post('/api/assessments').send(body);
+    await until(`/api/jobs/${again.body.jobId}`, ended);
+    // As a crash leaves it: running in the table, with nobody at work.
+    service.shop.store.prepare("UPDATE jobs SET state = 'running' WHERE id = ?").run(again.body.jobId);
+    service.shop.runner.start();
+    await until(`/api/jobs/${again.body.jobId}`, ended);
+    const hashes = await Promise.all(
+      [first, again].map(async ({ body: made }) => {
+        const { result } = (await request(service.app).get(`/api/assessments/${made.id}`)).body;
+        return result.provenance.resultSha256 as string;
+      }),
+    );
+    expect(hashes[0]).toBe(hashes[1]);
+  }, 120_000);
+
+  it('writes the numbers of the result into its table, with formulas made harmless', async () => {
+    const { items } = (await request(service.app).get('/api/assessments')).body;
+    const done = items.find((item: { state: string }) => item.state === 'done');
+    const { result } = (await request(service.app).get(`/api/assessments/${done.id}`)).body;
+    const { text } = await request(service.app).get(`/api/assessments/${done.id}/table.csv`);
+    expect(text).toContain(String(result.shieldDose[0].doseKradSi.total));
+    expect(text).toContain(String(result.margins[0].achievedRdmP95));
+    expect(text).toContain("'=SUM(1)");
+  });
+
+  it('keeps an assessment unchanged when its stack is deleted', async () => {
+    const { items } = (await request(service.app).get('/api/assessments')).body;
+    const done = items.find((item: { state: string }) => item.state === 'done');
+    const before = (await request(service.app).get(`/api/assessments/${done.id}/result.json`)).text;
+    const stack = (await request(service.app).get('/api/stacks')).body.items[0];
+    expect((await request(service.app).delete(`/api/stacks/${stack.id}`)).status).toBe(204);
+    expect((await request(service.app).get(`/api/assessments/${done.id}/result.json`)).text).toBe(before);
+  });
+});
