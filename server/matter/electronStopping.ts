@@ -1,5 +1,6 @@
 import { readReferenceColumns } from '../constants/reference.ts';
 import { gaussLegendre } from '../numeric/gaussLegendre.ts';
+import { ElementTable } from './elementTable.ts';
 import { zOverA } from './materials.ts';
 import type { Material, SternheimerFit } from './types.ts';
 
@@ -60,28 +61,11 @@ export function mollerLoss(of: Material, energyMeV: number, cutMeV: number): num
   return ((TWO_PI_NA_RE2_MC2 * zOverA(of)) / beta2) * (first + second + third + fourth);
 }
 
-const RADIATIVE = readReferenceColumns('electron-stopping', 'radiative.csv');
-const RADIATIVE_LOG_T = RADIATIVE.get('T_MeV')!.map(Math.log);
-/** Tabulated elements by Z: ln(S A/Z²), smooth in Z at every energy. */
-const RADIATIVE_ROWS = [
-  ['H', 1, 1.00794],
-  ['C', 6, 12.0107],
-  ['N', 7, 14.0067],
-  ['O', 8, 15.9994],
-  ['Al', 13, 26.9815386],
-  ['Si', 14, 28.0855],
-  ['Ti', 22, 47.867],
-  ['Fe', 26, 55.845],
-  ['Ni', 28, 58.6934],
-  ['Cu', 29, 63.546],
-  ['Sn', 50, 118.71],
-  ['Ta', 73, 180.94788],
-  ['W', 74, 183.84],
-  ['Pb', 82, 207.2],
-].map(([symbol, z, a]) => ({
-  z: z as number,
-  logS: RADIATIVE.get(symbol as string)!.map((s) => Math.log((s * (a as number)) / ((z as number) * (z as number)))),
-}));
+/** NIST ESTAR; S A/Z² is smooth in Z at every energy. */
+const RADIATIVE = new ElementTable(
+  readReferenceColumns('electron-stopping', 'radiative.csv'),
+  (stopping, z, a) => (stopping * a) / (z * z),
+);
 
 /**
  * Radiative mass stopping power, MeV cm²/g: NIST ESTAR per element, log-log in energy, linear in Z between the tabulated
@@ -90,30 +74,9 @@ const RADIATIVE_ROWS = [
 export function electronRadiativeStopping(of: Material, energyMeV: number): number {
   let sum = 0;
   for (const { z, atomicMassGPerMol, massFraction } of of.constituents) {
-    sum += (massFraction * z * z * Math.exp(logRadiative(z, Math.log(energyMeV)))) / atomicMassGPerMol;
+    sum += (massFraction * z * z * Math.exp(RADIATIVE.logAt(z, Math.log(energyMeV)))) / atomicMassGPerMol;
   }
   return sum;
-}
-
-function logRadiative(z: number, logT: number): number {
-  let i = 0;
-  while (i < RADIATIVE_ROWS.length - 2 && RADIATIVE_ROWS[i + 1].z <= z) i += 1;
-  const low = RADIATIVE_ROWS[i];
-  const high = RADIATIVE_ROWS[i + 1];
-  const share = (z - low.z) / (high.z - low.z);
-  const at = interpolate(RADIATIVE_LOG_T, low.logS, logT);
-  return share === 0 ? at : at + share * (interpolate(RADIATIVE_LOG_T, high.logS, logT) - at);
-}
-
-function interpolate(x: Float64Array, y: Float64Array, at: number): number {
-  let low = 0;
-  let high = x.length - 1;
-  while (high - low > 1) {
-    const middle = (low + high) >> 1;
-    if (x[middle] <= at) low = middle;
-    else high = middle;
-  }
-  return y[low] + ((at - x[low]) / (x[high] - x[low])) * (y[high] - y[low]);
 }
 
 const NODES = gaussLegendre(8);
