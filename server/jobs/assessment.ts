@@ -2,6 +2,7 @@ import type { Artefacts } from '../../db/artefacts.ts';
 import type { Blobs } from '../../db/blobs.ts';
 import type { Documents } from '../../db/documents.ts';
 import { contentHash } from '../canonical.ts';
+import { AppError } from '../errors.ts';
 import type { EnvironmentChoice } from '../fluence/index.ts';
 import type { AssessmentResult, ResultNotice } from '../margin/index.ts';
 import {
@@ -138,11 +139,18 @@ export async function runAssessment(
       const report = (share: number) =>
         context.progress(0.35 + (0.5 * (finished + share)) / shields.length, `Carrying particles through ${text}`);
       report(0);
-      const { path, response } = await responseOf(shop, stack, STANDARD_RESPONSE, context.signal, report);
-      for (const text of response.notices) {
-        if (!notices.some((notice) => notice.text === text)) notices.push({ code: 'response', severity: 'info', text });
+      try {
+        const { path, response } = await responseOf(shop, stack, STANDARD_RESPONSE, context.signal, report);
+        for (const text of response.notices) {
+          if (!notices.some((notice) => notice.text === text))
+            notices.push({ code: 'response', severity: 'info', text });
+        }
+        paths.set(key, { path, notAssessed: null });
+      } catch (error) {
+        // A shield outside the validity of the transport leaves its rows empty, with the reason; the others are assessed.
+        if (!(error instanceof AppError && error.code === 'RESPONSE_UNSUPPORTED')) throw error;
+        paths.set(key, { path: null, notAssessed: error.message });
       }
-      paths.set(key, { path, notAssessed: null });
     }
     finished += 1;
   }
@@ -174,6 +182,7 @@ export async function runAssessment(
           shieldText: describeStack(stack),
           massKg: place.areaM2 === undefined ? null : massOverAreaKg(stack, place.areaM2),
           responsePath: known.path,
+          ...(known.notAssessed === null ? {} : { notAssessed: known.notAssessed }),
           aluminiumEquivalent: [{ weight: 1, thicknessMm: aluminiumEquivalentMm(stack) }],
           ...(place.holdsAllParts === true ? { holdsAllParts: true } : {}),
         };

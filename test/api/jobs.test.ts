@@ -83,6 +83,27 @@ describe('jobs', () => {
     expect(text).toContain("'=SUM(1)");
   });
 
+  it('leaves a shield outside the validity unassessed, with the reason', async () => {
+    const asked = body as { studyId: string };
+    const shell = await request(service.app)
+      .post('/api/stacks')
+      .send({
+        studyId: asked.studyId,
+        name: 'Shell',
+        geometry: 'shell',
+        innerRadiusMm: 50,
+        layers: [{ materialId: 'Al', thicknessMm: 1 }],
+      });
+    const made = await request(service.app)
+      .post('/api/assessments')
+      .send({ ...body, stackIds: [shell.body.id] });
+    await until(`/api/jobs/${made.body.jobId}`, ended);
+    const { result } = (await request(service.app).get(`/api/assessments/${made.body.id}`)).body;
+    expect(result.shieldDose[0].doseKradSi).toBeNull();
+    expect(result.shieldDose[0].notAssessed).toMatch(/shell/);
+    expect(result.margins[0].verdict).toBe('notAssessed');
+  });
+
   it('keeps an assessment unchanged when its stack is deleted', async () => {
     const { items } = (await request(service.app).get('/api/assessments')).body;
     const done = items.find((item: { state: string }) => item.state === 'done');
