@@ -173,7 +173,20 @@ const elements = {
   nodeDeg: z.number().default(0),
   argumentDeg: z.number().default(0),
 };
-export const flybyBody = z.object({ ...elements, vInfKmS: z.number(), limitPlanetRadii: z.number().optional() });
+/** A flyby by its elements, or by its arrival: v∞ (ICRF axes) and the point of the B-plane. */
+export const flybyBody = z.union([
+  z.object({ ...elements, vInfKmS: z.number(), limitPlanetRadii: z.number().optional() }),
+  z.object({
+    planet: elements.planet,
+    name,
+    studyId: id,
+    periapsisUtc: z.string(),
+    vInfIcrfKmS: z.tuple([z.number(), z.number(), z.number()]),
+    bDotTKm: z.number(),
+    bDotRKm: z.number(),
+    limitPlanetRadii: z.number().optional(),
+  }),
+]);
 export const orbitBody = z.object({
   ...elements,
   periodDays: z.number().optional(),

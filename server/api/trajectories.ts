@@ -152,7 +152,7 @@ function sketchRoutes(shop: Shop, shown: (document: ReturnType<Shop['trajectorie
       method: 'post',
       path: '/api/trajectories/flyby',
       tag: 'trajectories',
-      summary: 'Sketch a flyby from periapsis, v∞ and orientation',
+      summary: 'Sketch a flyby from periapsis, v∞ and orientation, or from the v∞ vector and its point in the B-plane',
       body: flybyBody,
       answer: anyObject,
       status: 201,

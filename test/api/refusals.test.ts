@@ -97,6 +97,35 @@ const binary = (response: NodeJS.ReadableStream, done: (error: Error | null, bod
 const post = (path: string, body: object) => () => request(service.app).post(path).send(body);
 const stack = (layers: object[]) => ({ studyId, name: 'S', geometry: 'slab', layers });
 
+describe('sketches', () => {
+  const common = { planet: 'uranus', name: 'Sketch', periapsisUtc: '2045-06-14T09:30:00' };
+  it('draw a flyby from elements and from the B-plane, as trajectories that can be downloaded', async () => {
+    const elements = { ...common, studyId, periapsisPlanetRadii: 2, vInfKmS: 8, inclinationDeg: 60 };
+    const first = await post('/api/trajectories/flyby', elements)();
+    expect(first.status).toBe(201);
+    expect(first.body.closestApproaches[0].radiusPlanetRadii).toBeCloseTo(2, 6);
+    const arrival = { ...common, studyId, vInfIcrfKmS: [8, 0, 0], bDotTKm: 150_000, bDotRKm: 20_000 };
+    const second = await post('/api/trajectories/flyby', arrival)();
+    expect(second.status).toBe(201);
+    expect(second.body.vInfKmS).toBeCloseTo(8, 4);
+    const source = await request(service.app).get(`/api/trajectories/${second.body.id}/source`).buffer();
+    expect(Buffer.from(source.body as Buffer).toString('utf8')).toMatch(/^CCSDS_OEM_VERS/);
+  });
+  it('refuse a periapsis inside the planet, naming field and limit', () =>
+    refused(
+      post('/api/trajectories/flyby', {
+        ...common,
+        studyId,
+        periapsisPlanetRadii: 0.5,
+        vInfKmS: 8,
+        inclinationDeg: 60,
+      }),
+      422,
+      'SKETCH_INVALID',
+      /periapsisPlanetRadii/,
+    ));
+});
+
 describe('shields and parts', () => {
   it('refuses zero and negative thickness, naming the field and the limit', async () => {
     const bad = (thicknessMm: number) => post('/api/stacks', stack([{ materialId: 'Al', thicknessMm }]));
