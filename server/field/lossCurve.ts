@@ -37,7 +37,7 @@ const L_COUNT = 171;
 const BRANCH_JUMP = 0.35;
 /**
  * A shell round a dipole displaced by up to 0.55 radii reaches at least (L − 0.55) from the centre; below L ≈ 1.4 the
- * two families merge and every shell is lost. Our own criterion, checked against drift shells traced in full.
+ * two families merge and every shell is lost. Our own criterion; for a centred dipole it changes nothing.
  */
 const APEX_SHARE = 0.7;
 
