@@ -17,6 +17,11 @@ export function readReference(dataset: string, file: string): ReferenceFile {
   return { text, sha256: sha256Hex(text) };
 }
 
+/** The bytes of a binary table. */
+export function readReferenceBytes(dataset: string, file: string): Uint8Array {
+  return readFileSync(new URL(`${dataset}/${file}`, ROOT));
+}
+
 export function readReferenceJson<T>(dataset: string, file: string): T {
   return JSON.parse(readReference(dataset, file).text) as T;
 }

@@ -44,9 +44,12 @@ export class SegmentTracer {
   /** Arc lengths from the point to the mirror points, forward and backward. */
   private forwardLength = 0;
   private backwardLength = 0;
+  private readonly openRadius: number;
 
-  constructor(model: FieldModel) {
+  /** @param openRadius - where a line counts as open, reference radii; only a map looks beyond OPEN_RADIUS */
+  constructor(model: FieldModel, openRadius = OPEN_RADIUS) {
     this.model = model;
+    this.openRadius = openRadius;
     this.forward = new FieldLine(model.fieldInto);
     this.backward = new FieldLine(model.fieldInto);
     const planet = PLANETS[model.planet];
@@ -111,7 +114,7 @@ export class SegmentTracer {
   }
 
   private leg(line: FieldLine, x: number, y: number, z: number, direction: 1 | -1, out: LineSegment): boolean {
-    const end = line.trace(x, y, z, direction, out.mirrorNt, 0, OPEN_RADIUS, LINE_TOLERANCE);
+    const end = line.trace(x, y, z, direction, out.mirrorNt, 0, this.openRadius, LINE_TOLERANCE);
     if (end === 'mirror') return true;
     out.end = end === 'singular' || end === 'sphere' ? 'singular' : 'open';
     return false;

@@ -51,5 +51,7 @@ export interface MagneticLabeller {
   readonly model: FieldModel;
   /** How: 'traced' or 'map', printed in the provenance. */
   readonly method: 'traced' | 'map';
+  /** Content address of what the map was made from; absent when traced. */
+  readonly mapKey?: string;
   labelInto(x: number, y: number, z: number, out: MagneticLabel): MagneticLabel;
 }

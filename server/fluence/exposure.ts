@@ -1,5 +1,5 @@
 import { contentHash } from '../canonical.ts';
-import { type FieldModelId, fieldModel, type MagneticLabeller, tracedLabeller } from '../field/index.ts';
+import { type FieldModelId, fieldLabeller, fieldModel, type MagneticLabeller } from '../field/index.ts';
 import { type BeltModel, beltModel, LONG_TERM_MEAN_OFFSET_DEX } from '../flux/index.ts';
 import { ELECTRON_EDGES_MEV, PROTON_EDGES_MEV } from '../numeric/spectrumGrid.ts';
 import type { Path } from '../trajectory/path.ts';
@@ -18,7 +18,7 @@ const N_PROTON = PROTON_EDGES_MEV.length;
 export const RANKING_THRESHOLD_MEV = 1;
 
 export interface ExposureOptions extends FollowOptions {
-  /** Default: trace every point. A map of the same model may stand in. */
+  /** Default: the shipped map of the model, and tracing where none ships. */
   readonly labellerFor?: (id: FieldModelId) => MagneticLabeller;
   /** An uploaded belt table instead of a built-in model. */
   readonly belts?: BeltModel;
@@ -42,14 +42,24 @@ export function beltsOf(environment: EnvironmentChoice): BeltModel {
   });
 }
 
-/** Content address of an exposure: the path, the environment, the belts and the engine. */
-export function exposureKey(path: Path, environment: EnvironmentChoice, beltsSha256?: string): string {
+/**
+ * Content address of an exposure: the path, the environment, the belts, the engine, and the field maps that labelled it.
+ *
+ * @param mapKeys - by field model id; models that were traced are left out
+ */
+export function exposureKey(
+  path: Path,
+  environment: EnvironmentChoice,
+  mapKeys: Readonly<Partial<Record<FieldModelId, string>>>,
+  beltsSha256?: string,
+): string {
   return contentHash({
     kind: 'exposure',
     engine: ENGINE_VERSION,
     path: path.inputsSha256,
     planet: path.planet,
     environment,
+    mapKeys,
     belts: beltsSha256 ?? null,
   });
 }
@@ -68,7 +78,7 @@ export function computeExposure(path: Path, environment: EnvironmentChoice, opti
   const labellerFor = (id: FieldModelId): MagneticLabeller => {
     let labeller = labellers.get(id);
     if (labeller === undefined) {
-      labeller = options.labellerFor?.(id) ?? tracedLabeller(fieldModel(id));
+      labeller = options.labellerFor?.(id) ?? fieldLabeller(fieldModel(id));
       labellers.set(id, labeller);
     }
     return labeller;
@@ -99,8 +109,10 @@ export function computeExposure(path: Path, environment: EnvironmentChoice, opti
   const nominalVariant = nominalIndex(rows, environment);
   // Samples of all variants would fill the memory; the nominal one is followed once more instead.
   const nominalSamples = samplesOf(rows[nominalVariant].variant);
+  const mapKeys: Partial<Record<FieldModelId, string>> = {};
+  for (const [id, { mapKey }] of labellers) if (mapKey !== undefined) mapKeys[id] = mapKey;
   const artefact: FluenceArtefact = {
-    inputsSha256: exposureKey(path, environment),
+    inputsSha256: exposureKey(path, environment, mapKeys),
     planet: path.planet,
     beltModelId: belts.id,
     variants: rows.map((row) => row.variant),

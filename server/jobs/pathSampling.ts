@@ -1,5 +1,5 @@
 import { PLANETS } from '../constants/planets.ts';
-import { evaluatePoint, type FieldPoint, fieldModel, makeLabel, tracedLabeller } from '../field/index.ts';
+import { evaluatePoint, type FieldPoint, fieldLabeller, fieldModel, makeLabel } from '../field/index.ts';
 import { rotationModelFor } from '../fluence/index.ts';
 import { bodyAxesInto, latitudeLongitudeDeg, rotateInto } from '../frames/rotation.ts';
 import { formatUtc } from '../time/index.ts';
@@ -33,7 +33,7 @@ export interface SampledPathRows {
 export function samplePath(path: Path, input: SamplePathInput): SampledPathRows {
   const model = fieldModel(input.fieldModelId);
   const rotation = rotationModelFor(input.rotationModelId, path.planet);
-  const labeller = tracedLabeller(model);
+  const labeller = fieldLabeller(model);
   const label = makeLabel();
   const state = new Float64Array(6);
   const axes = new Float64Array(9);

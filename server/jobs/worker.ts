@@ -2,6 +2,7 @@ import { readFileSync, writeFileSync } from 'node:fs';
 import { deserialize, serialize } from 'node:v8';
 import { fileSource } from '../../db/blobs.ts';
 import { aluminiumDoseDepth } from '../dose/aluminium.ts';
+import { type FieldMapShard, type FieldMapTask, traceFieldMapShard } from '../field/index.ts';
 import {
   computeExposure,
   type EnvironmentChoice,
@@ -28,6 +29,7 @@ export type WorkerTask =
       readonly outPath: string;
     }
   | { readonly kind: 'shard'; readonly task: ShardTask }
+  | { readonly kind: 'fieldMapShard'; readonly task: FieldMapTask }
   | { readonly kind: 'assess'; readonly order: AssessOrder }
   | ({ readonly kind: 'samplePath'; readonly filePath: string; readonly request: TrajectoryRequest } & SamplePathInput)
   | ({ readonly kind: 'evaluateField' } & EvaluateFieldInput)
@@ -52,11 +54,13 @@ export type WorkerAnswer<K extends WorkerTask['kind']> = K extends 'readTrajecto
     ? ExposureSummary
     : K extends 'shard'
       ? ShardTally
-      : K extends 'assess'
-        ? AssessmentResult
-        : K extends 'report'
-          ? Uint8Array
-          : unknown;
+      : K extends 'fieldMapShard'
+        ? FieldMapShard
+        : K extends 'assess'
+          ? AssessmentResult
+          : K extends 'report'
+            ? Uint8Array
+            : unknown;
 
 export default async function work(task: WorkerTask): Promise<unknown> {
   switch (task.kind) {
@@ -75,6 +79,8 @@ export default async function work(task: WorkerTask): Promise<unknown> {
       });
     case 'shard':
       return runShard(task.task);
+    case 'fieldMapShard':
+      return traceFieldMapShard(task.task);
     case 'assess':
       return assess(fillOrder(task.order));
     case 'samplePath':
