@@ -1,4 +1,4 @@
-import { bLossNtAt, lossCurve } from './lossCurve.ts';
+import { bLossNtAt, type LossCurve, lossCurve } from './lossCurve.ts';
 import { makeLineSegment, SegmentTracer } from './tracer.ts';
 import type { FieldModel, MagneticLabel, MagneticLabeller } from './types.ts';
 
@@ -10,11 +10,12 @@ export function makeLabel(): MagneticLabel {
  * Labels points by tracing the field line of each: exact to 1e-6 in L, about 10 000 points a second.
  * `reason` is 'open' where the line does not come back within 30 radii, 'loss' where the locally mirroring particle's
  * bounce path or drift shell dips into the planet, null where it is trapped.
+ *
+ * @param curve - B_loss(L) of this model, when it is known already: working it out takes a second
  */
-export function tracedLabeller(model: FieldModel): MagneticLabeller {
+export function tracedLabeller(model: FieldModel, curve: LossCurve = lossCurve(model)): MagneticLabeller {
   const tracer = new SegmentTracer(model);
   const segment = makeLineSegment();
-  const curve = lossCurve(model);
   return {
     model,
     method: 'traced',

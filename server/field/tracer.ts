@@ -25,6 +25,16 @@ export interface LineSegment {
   belowSurface: boolean;
 }
 
+/** How finely a tracer works. */
+interface TracerOptions {
+  /** Where a line counts as open, reference radii. */
+  readonly openRadius?: number;
+  /** Local error of position along the line, reference radii. */
+  readonly tolerance?: number;
+  /** Nodes of the integral, as a share of those that give 1e-6. */
+  readonly nodeShare?: number;
+}
+
 /**
  * Traces the bounce path of a particle through a point and integrates its second invariant.
  *
@@ -45,11 +55,15 @@ export class SegmentTracer {
   private forwardLength = 0;
   private backwardLength = 0;
   private readonly openRadius: number;
+  private readonly tolerance: number;
+  private readonly nodeShare: number;
 
-  /** @param openRadius - where a line counts as open, reference radii; only a map looks beyond OPEN_RADIUS */
-  constructor(model: FieldModel, openRadius = OPEN_RADIUS) {
+  /** @param options - other than the defaults only for the nodes of a map */
+  constructor(model: FieldModel, options: TracerOptions = {}) {
     this.model = model;
-    this.openRadius = openRadius;
+    this.openRadius = options.openRadius ?? OPEN_RADIUS;
+    this.tolerance = options.tolerance ?? LINE_TOLERANCE;
+    this.nodeShare = options.nodeShare ?? 1;
     this.forward = new FieldLine(model.fieldInto);
     this.backward = new FieldLine(model.fieldInto);
     const planet = PLANETS[model.planet];
@@ -114,7 +128,7 @@ export class SegmentTracer {
   }
 
   private leg(line: FieldLine, x: number, y: number, z: number, direction: 1 | -1, out: LineSegment): boolean {
-    const end = line.trace(x, y, z, direction, out.mirrorNt, 0, this.openRadius, LINE_TOLERANCE);
+    const end = line.trace(x, y, z, direction, out.mirrorNt, 0, this.openRadius, this.tolerance);
     if (end === 'mirror') return true;
     out.end = end === 'singular' || end === 'sphere' ? 'singular' : 'open';
     return false;
@@ -188,7 +202,7 @@ export class SegmentTracer {
     below = below || this.surfaceRatio(point[0], point[1], point[2]) < 1;
     const endRadius = Math.min(backEndRadius, Math.hypot(point[0], point[1], point[2]));
 
-    const nodes = Math.min(1000, Math.ceil(40 + 22 * Math.sqrt(total / endRadius)));
+    const nodes = Math.min(1000, Math.ceil(this.nodeShare * (40 + 22 * Math.sqrt(total / endRadius))));
     let sum = 0;
     let least = 0;
     for (let k = 0; k < nodes; k++) {

@@ -1,5 +1,7 @@
-import { fieldModel } from '../../server/field/index.ts';
+import { fieldLabeller, fieldModel, makeLabel, tracedLabeller } from '../../server/field/index.ts';
+import { assembleFieldMap, DEFAULT_GRID, planFieldMap } from '../../server/field/map/index.ts';
 import { makeLineSegment, SegmentTracer } from '../../server/field/tracer.ts';
+import { Pool } from '../../server/jobs/pool.ts';
 import { randomStream } from '../../server/numeric/random.ts';
 import type { BenchRow } from './run.ts';
 
@@ -51,6 +53,40 @@ export default async function fieldBench(report: (row: BenchRow) => void): Promi
       unit: 'points/s',
       limit: 'at least 3000',
     });
+    const label = makeLabel();
+    const labelsPerSecond = (of: ReturnType<typeof fieldLabeller>, among: typeof points) =>
+      among.length /
+      medianSeconds(() => {
+        for (const [x, y, z] of among) sink += of.labelInto(x, y, z, label).bNt;
+      });
+    const mapped = fieldLabeller(model);
+    const traced = tracedLabeller(model);
+    const trapped = points.filter(([x, y, z]) => mapped.labelInto(x, y, z, label).reason === null);
+    report({
+      name: `field::label:map:${id}`,
+      value: labelsPerSecond(mapped, trapped),
+      unit: 'points/s',
+      rival: { name: 'traced', value: labelsPerSecond(traced, trapped) },
+    });
     if (!Number.isFinite(sink)) throw new Error('a field came out as no number');
   }
+
+  const pool = new Pool(2);
+  // Two small tasks first, so that both threads have read the code.
+  await Promise.all(
+    planFieldMap('neptune-o8', DEFAULT_GRID, 2000)
+      .slice(0, 4)
+      .map((task) => pool.run({ kind: 'fieldMapShard', task })),
+  );
+  const start = process.hrtime.bigint();
+  const tasks = planFieldMap('neptune-o8', DEFAULT_GRID, 32);
+  const shards = await Promise.all(tasks.map((task) => pool.run({ kind: 'fieldMapShard', task })));
+  assembleFieldMap('neptune-o8', DEFAULT_GRID, shards);
+  report({
+    name: 'field::build-map:neptune-o8,two-cores',
+    value: Number(process.hrtime.bigint() - start) / 1e9,
+    unit: 's',
+    limit: 'at most 60',
+  });
+  await pool.close();
 }

@@ -6,7 +6,8 @@ import { type FieldMap, type FieldMapGrid, nodeCount } from './grid.ts';
 /**
  * A field map on disk: the length of the header (four bytes, little-endian), the header as JSON, and a brotli stream of
  * the payload. Payload: for each of the two quantities the differences of neighbouring nodes (modulo 2¹⁶), low bytes then
- * high bytes, which compresses best; then one byte per cell.
+ * high bytes, which compresses best; then one byte per cell; then altitude, ln L and B_loss of the loss curve as
+ * little-endian doubles.
  */
 export interface FieldMapHeader {
   readonly modelId: FieldModelId;
@@ -17,7 +18,9 @@ export interface FieldMapHeader {
 
 export function encodeFieldMap(map: FieldMap): Uint8Array {
   const count = nodeCount(map.grid);
-  const payload = new Uint8Array(4 * count + map.cells.length);
+  const { altitudeKm, lnL, bLossNt } = map.loss;
+  const lossAt = 4 * count + map.cells.length;
+  const payload = new Uint8Array(lossAt + 8 * (1 + 2 * lnL.length));
   for (let quantity = 0; quantity < 2; quantity++) {
     let previous = 0;
     for (let i = 0; i < count; i++) {
@@ -29,6 +32,10 @@ export function encodeFieldMap(map: FieldMap): Uint8Array {
     }
   }
   payload.set(map.cells, 4 * count);
+  const view = new DataView(payload.buffer);
+  [altitudeKm, ...lnL, ...bLossNt].forEach((value, i) => {
+    view.setFloat64(lossAt + 8 * i, value, true);
+  });
   const header: FieldMapHeader = {
     modelId: map.modelId,
     key: map.key,
@@ -55,8 +62,8 @@ export function decodeFieldMap(bytes: Uint8Array): FieldMap {
   const { modelId, key, grid, payloadSha256 } = fieldMapHeader(bytes);
   const payload = unpack(bytes.subarray(bodyStart(bytes)));
   const count = nodeCount(grid);
-  const cells = (grid.shells - 1) * (grid.latitudes + 1) * grid.longitudes;
-  if (payload.length !== 4 * count + cells || sha256Hex(payload) !== payloadSha256) {
+  const lossAt = 4 * count + (grid.shells - 1) * (grid.latitudes + 1) * grid.longitudes;
+  if (payload.length < lossAt || sha256Hex(payload) !== payloadSha256) {
     throw new TypeError(`field map of ${modelId}: the payload does not match its header`);
   }
   const nodes = new Uint16Array(2 * count);
@@ -67,7 +74,21 @@ export function decodeFieldMap(bytes: Uint8Array): FieldMap {
       nodes[2 * i + quantity] = value;
     }
   }
-  return { modelId, key, grid, nodes, cells: Uint8Array.from(payload.subarray(4 * count)) };
+  const view = new DataView(payload.buffer, payload.byteOffset + lossAt, payload.length - lossAt);
+  const double = (i: number) => view.getFloat64(8 * i, true);
+  const rows = (view.byteLength / 8 - 1) / 2;
+  return {
+    modelId,
+    key,
+    grid,
+    nodes,
+    cells: Uint8Array.from(payload.subarray(4 * count, lossAt)),
+    loss: {
+      altitudeKm: double(0),
+      lnL: Float64Array.from({ length: rows }, (_, i) => double(1 + i)),
+      bLossNt: Float64Array.from({ length: rows }, (_, i) => double(1 + rows + i)),
+    },
+  };
 }
 
 function bodyStart(bytes: Uint8Array): number {

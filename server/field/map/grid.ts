@@ -1,5 +1,6 @@
 import { contentHash } from '../../canonical.ts';
 import { PLANETS } from '../../constants/planets.ts';
+import { LOSS_ALTITUDE_KM, type LossCurve } from '../lossCurve.ts';
 import { OPEN_RADIUS } from '../tracer.ts';
 import type { FieldModel, FieldModelId } from '../types.ts';
 
@@ -29,6 +30,8 @@ export interface FieldMap {
   readonly nodes: Uint16Array;
   /** Shape (shells − 1, latitudes + 1, longitudes): one of CELL; row 0 reaches over the south pole, the last over the north. */
   readonly cells: Uint8Array;
+  /** B_loss(L) of the model, so that nobody has to trace the whole surface again. */
+  readonly loss: LossCurve;
 }
 
 /** Flags of a traced node; invalid: it has no L. */
@@ -77,8 +80,8 @@ export const DEFAULT_GRID: FieldMapGrid = {
   longitudes: 120,
 };
 
-/** Raise whenever the meaning of the nodes or the choice of cells changes: older maps are then no longer used. */
-const MAP_VERSION = 1;
+/** Raise whenever the meaning of the nodes, the choice of cells or B_loss(L) changes: older maps are then no longer used. */
+const MAP_VERSION = 2;
 const PROBES = 24;
 
 export function nodeCount(grid: FieldMapGrid): number {
@@ -112,6 +115,7 @@ export function fieldMapKey(model: FieldModel, grid: FieldMapGrid): string {
     dipoleMomentNt: model.dipoleMomentNt.toPrecision(12),
     surfaceKm: [planet.equatorialRadiusKm, planet.polarRadiusKm],
     openRadius: OPEN_RADIUS,
+    lossAltitudeKm: LOSS_ALTITUDE_KM,
     edges: [ROUGH_SHARE, EDGE_L_CLOSED, EDGE_L_OPEN],
     steps: [U_STEP, V_STEP],
     probes,

@@ -1,9 +1,9 @@
 import { tracedLabeller } from '../labeller.ts';
-import { bLossNtAt, lossCurve } from '../lossCurve.ts';
+import { bLossNtAt } from '../lossCurve.ts';
 import { OPEN_RADIUS } from '../tracer.ts';
 import type { FieldModel, MagneticLabel, MagneticLabeller } from '../types.ts';
 import { nodeIndex } from './cells.ts';
-import { CELL, EDGE_L_CLOSED, EDGE_L_OPEN, type FieldMap, gridAxes, U_STEP, V_STEP } from './grid.ts';
+import { CELL, EDGE_L_CLOSED, EDGE_L_OPEN, type FieldMap, fieldMapKey, gridAxes, U_STEP, V_STEP } from './grid.ts';
 
 /** Rows and columns added all round, so that no stencil has to look over a pole or a full turn. */
 const PAD = 2;
@@ -17,18 +17,20 @@ const LOST_FOR_SURE = 1.01;
  * (near jumps of L, the edge of the open lines, and where only some bounce paths of a cell meet the planet), and outside
  * 1 to 30 radii, the point is traced. The label of a point depends on the point alone.
  *
- * @throws {TypeError} when the map is of another model
+ * @throws {TypeError} when the map was made from anything but this very model by the code of today
  */
 export function mappedLabeller(model: FieldModel, map: FieldMap): MagneticLabeller {
-  if (map.modelId !== model.id) throw new TypeError(`map of ${map.modelId} given for ${model.id}`);
+  if (map.key !== fieldMapKey(model, map.grid)) {
+    throw new TypeError(`the map of ${map.modelId} was not made from this ${model.id}`);
+  }
   const { shells, latitudes, longitudes, innerRadius, outerRadius } = map.grid;
   const { cells } = map;
   const padded = pad(map);
   const rowStride = 2 * (longitudes + 2 * PAD);
   const shellStride = rowStride * (latitudes + 2 * PAD);
   const axes = gridAxes(model);
-  const traced = tracedLabeller(model);
-  const curve = lossCurve(model);
+  const traced = tracedLabeller(model, map.loss);
+  const curve = map.loss;
   const b = new Float64Array(3);
   const weights = new Float64Array(12);
   const inverseFirst = 1 / innerRadius;

@@ -8,6 +8,7 @@ import {
   type FieldModelId,
   fieldLabeller,
   fieldModel,
+  lossCurve,
   type MagneticLabel,
   makeLabel,
   tracedLabeller,
@@ -39,6 +40,8 @@ const LN_L_CHECKS = 1e-3;
 const LN_L_LARGEST = 0.05;
 /** ln B_min: half a step of the stored cube root where B_min is a hundredth of B, and the interpolation. */
 const LN_B_MIN_Q99 = 5e-3;
+/** Relative: the shipped loss curve is the one worked out today; on one processor they agree to the bit. */
+const B_LOSS_REL = 1e-6;
 /** Share of points that may be called trapped by one and not by the other: those on the edge itself. */
 const REASON_SHARE = 1e-3;
 const POINTS = 3000;
@@ -71,6 +74,12 @@ for (const id of MAPPED_MODELS) {
           expect(Math.abs(value - map.nodes[2 * first + i])).toBeLessThanOrEqual(1);
         });
       }
+      const fresh = lossCurve(model);
+      expect(map.loss.altitudeKm).toBe(fresh.altitudeKm);
+      map.loss.bLossNt.forEach((value, i) => {
+        expect(map.loss.lnL[i]).toBeCloseTo(fresh.lnL[i], 12);
+        expect(Math.abs(value - fresh.bLossNt[i])).toBeLessThanOrEqual(B_LOSS_REL * fresh.bLossNt[i]);
+      });
     });
 
     it('gives L, B_min and the reason of direct tracing, 1.2 to 20 radii', () => {

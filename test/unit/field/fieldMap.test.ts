@@ -79,6 +79,8 @@ describe('field map', () => {
     expect(fieldLabeller(URANUS_Q3_WITH_EXTERNAL).method).toBe('traced');
     expect(fieldLabeller(fieldModel('neptune-otd')).method).toBe('traced');
     expect(() => mappedLabeller(fieldModel('uranus-q3'), map)).toThrow(TypeError);
+    const q3 = shippedFieldMap(fieldModel('uranus-q3'))!;
+    expect(() => mappedLabeller(URANUS_Q3_WITH_EXTERNAL, q3)).toThrow(TypeError);
   });
 
   it('traces what lies off the grid', () => {
