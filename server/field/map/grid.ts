@@ -55,10 +55,11 @@ export const CELL = {
 
 /**
  * Out where lines reach OPEN_RADIUS the field is nearly a dipole's and L nearly the radius of the apex: below the first
- * of these L a line is closed, above the second it is open, and only between them it has to be traced.
+ * of these L a line is closed, above the second it is open, and only between them it has to be traced. (The shipped models
+ * have open lines from L 29.67 and closed ones up to L 30.34.) A cell whose nodes say otherwise is traced.
  */
-export const EDGE_L_CLOSED = 0.97 * OPEN_RADIUS;
-export const EDGE_L_OPEN = 1.03 * OPEN_RADIUS;
+export const EDGE_L_CLOSED = 0.985 * OPEN_RADIUS;
+export const EDGE_L_OPEN = 1.015 * OPEN_RADIUS;
 
 /**
  * A node is rough when it differs by more than this share from the cubic through its neighbours one and three steps away.
