@@ -1,15 +1,18 @@
 import { z } from 'zod';
 import { PLANETS } from '../constants/planets.ts';
 import { ERROR_CODES, type ErrorCode } from '../errors.ts';
-import { FIELD_MODELS } from '../field/index.ts';
+import { FIELD_MODELS, fieldModel } from '../field/index.ts';
 import { BELT_MODEL_IDS, beltModel } from '../flux/index.ts';
 import { ROTATION_MODELS } from '../frames/rotation.ts';
 import { materials } from '../matter/index.ts';
 import { ENGINE_VERSION } from '../version.ts';
 import { problemType } from './problem.ts';
 import { defineRoute, type Route } from './routes.ts';
-import { anyObject, fieldBody, page } from './schemas.ts';
+import { adiabaticityQuery, anyObject, fieldBody, page } from './schemas.ts';
 import { found, type Shop } from './shop.ts';
+
+/** L of the rows on adiabaticity, reference radii: the belts and a little beyond. */
+const ADIABATICITY_L = [2, 3, 4, 5, 6, 7, 8, 10, 12, 15, 18];
 
 /** What the environment and the shields are made of, with sources; health; what a problem means. */
 export function catalogueRoutes(shop: Shop): Route[] {
@@ -48,6 +51,18 @@ export function catalogueRoutes(shop: Shop): Route[] {
             dipoleMomentNt,
           })),
         ),
+    }),
+    defineRoute({
+      method: 'get',
+      path: '/api/field-models/{id}/adiabaticity',
+      tag: 'environment',
+      summary: 'Gyration, bounce and drift periods by L, and the energy above which L describes no particle',
+      query: adiabaticityQuery,
+      answer: page,
+      handler: ({ params, query }) => {
+        const { id: fieldModelId } = fieldModel(params.id);
+        return shop.pool.run({ kind: 'adiabaticity', fieldModelId, lShells: ADIABATICITY_L, ...query });
+      },
     }),
     defineRoute({
       method: 'get',

@@ -163,6 +163,13 @@ export const fieldBody = z.object({
   mirrorFieldFactor: z.number().default(1),
 });
 
+/** Fixed L: each drift shell takes a tenth of a second. */
+export const adiabaticityQuery = z.object({
+  species: z.enum(['electron', 'proton']),
+  energyMeV: z.coerce.number(),
+  equatorialPitchAngleDeg: z.coerce.number().default(45),
+});
+
 const elements = {
   planet: z.enum(['uranus', 'neptune']),
   name,

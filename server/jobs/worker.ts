@@ -2,7 +2,14 @@ import { readFileSync, writeFileSync } from 'node:fs';
 import { deserialize, serialize } from 'node:v8';
 import { fileSource } from '../../db/blobs.ts';
 import { aluminiumDoseDepth } from '../dose/aluminium.ts';
-import { type FieldMapShard, type FieldMapTask, traceFieldMapShard } from '../field/index.ts';
+import {
+  adiabaticity,
+  type FieldMapShard,
+  type FieldMapTask,
+  fieldModel,
+  type SpeciesId,
+  traceFieldMapShard,
+} from '../field/index.ts';
 import {
   computeExposure,
   type EnvironmentChoice,
@@ -33,6 +40,14 @@ export type WorkerTask =
   | { readonly kind: 'assess'; readonly order: AssessOrder }
   | ({ readonly kind: 'samplePath'; readonly filePath: string; readonly request: TrajectoryRequest } & SamplePathInput)
   | ({ readonly kind: 'evaluateField' } & EvaluateFieldInput)
+  | {
+      readonly kind: 'adiabaticity';
+      readonly fieldModelId: string;
+      readonly species: SpeciesId;
+      readonly energyMeV: number;
+      readonly lShells: readonly number[];
+      readonly equatorialPitchAngleDeg: number;
+    }
   | { readonly kind: 'report'; readonly input: ReportInput };
 
 /** An assessment whose large arrays are still files. */
@@ -87,6 +102,13 @@ export default async function work(task: WorkerTask): Promise<unknown> {
       return withTrajectory(task.filePath, task.request, ({ path }) => samplePath(path, task));
     case 'evaluateField':
       return evaluateField(task);
+    case 'adiabaticity': {
+      const { species, energyMeV, lShells, equatorialPitchAngleDeg } = task;
+      return {
+        items: adiabaticity(fieldModel(task.fieldModelId), species, energyMeV, lShells, equatorialPitchAngleDeg),
+        nextCursor: null,
+      };
+    }
     case 'report':
       return renderReport(task.input);
   }
