@@ -1,0 +1,38 @@
+/**
+ * Source: the definition of B_loss by whole drift shells (Roederer 1970, Dynamics of Geomagnetically Trapped Radiation,
+ * section III), worked out line by line, against the curve that is read off the planet's surface.
+ */
+import { describe, expect, it } from 'vitest';
+import { bLossNtAt, DriftShellTracer, type FieldModelId, fieldModel, lossCurve } from '../../../server/field/index.ts';
+
+/** Relative: the curve's grid of 2 degrees. */
+const CURVE_REL = 0.01;
+
+describe('B_loss of the surface against whole drift shells', () => {
+  it.each<[FieldModelId, number]>([
+    ['uranus-q3', 3],
+    ['uranus-q3', 5],
+    ['uranus-q3', 10],
+    ['uranus-q3', 18],
+    ['neptune-o8', 7],
+    ['neptune-o8', 10],
+    ['neptune-o8', 18],
+  ])('%s at L = %d', (id, lShell) => {
+    const model = fieldModel(id);
+    const whole = new DriftShellTracer(model).bLossNt(lShell);
+    expect(Math.abs(bLossNtAt(lossCurve(model), lShell) / whole - 1)).toBeLessThan(CURVE_REL);
+  });
+
+  it('shows what the surface curve misses: a sliver of longitude where shells of O8 at L = 4 dip inside', () => {
+    const model = fieldModel('neptune-o8');
+    const tracer = new DriftShellTracer(model);
+    const surfaceNt = bLossNtAt(lossCurve(model), 4);
+    const whole = tracer.bLossNt(4);
+    expect(whole).toBeLessThan(0.8 * surfaceNt);
+    const low = tracer.shell(4, 0.95 * surfaceNt).lines.filter((line) => Math.min(...line.mirrorAltitudesKm) < 0);
+    const reach = low.map((line) => line.magneticLongitudeRad);
+    expect(low.length).toBeGreaterThan(1);
+    // All of them within a few degrees of each other.
+    expect(Math.max(...reach) - Math.min(...reach)).toBeLessThan(0.15);
+  });
+});
