@@ -12,35 +12,43 @@ interface StoredTable {
     readonly sha256: string;
     readonly description: string;
     readonly notices: readonly string[];
+    readonly referenceErrorRel: number;
     readonly electron: Readonly<Record<keyof ShieldResponse['electron'], readonly number[]>>;
     readonly proton: Readonly<Record<keyof ShieldResponse['proton'], readonly number[]>>;
   }[];
 }
 
-let table: DoseDepthTable | undefined;
+const tables: { [geometry in DoseDepthTable['geometry']]?: DoseDepthTable } = {};
+
+const TARGETS: Readonly<Record<DoseDepthTable['geometry'], (targetMaterialId: string) => string>> = {
+  slab: (of) => `0.1 mm of ${of} behind an aluminium slab, open behind; isotropic fluence on its outer face`,
+  sphere: (of) => `a ball of ${of} of 0.1 mm radius at the centre of a solid aluminium sphere; isotropic fluence`,
+};
 
 /**
- * Responses of aluminium slabs from 0.05 to 25 mm, open behind, to electrons, their bremsstrahlung and protons: the dose
- * in 0.1 mm of silicon behind them. Computed ahead by test/make/aluminiumResponses.ts; statistical errors included.
+ * Responses of aluminium from 0.01 to 50 mm, slabs open behind or solid spheres, to electrons, their bremsstrahlung and
+ * protons: the dose in silicon. Computed ahead by test/make/aluminiumResponses.ts; statistical errors included.
  */
-export function aluminiumDoseDepth(): DoseDepthTable {
-  table ??= load();
-  return table;
+export function aluminiumDoseDepth(geometry: DoseDepthTable['geometry'] = 'slab'): DoseDepthTable {
+  const known = tables[geometry] ?? load(geometry);
+  tables[geometry] = known;
+  return known;
 }
 
-function load(): DoseDepthTable {
-  const stored = readReferenceJson<StoredTable>('responses-aluminium', 'slab.json');
+function load(geometry: DoseDepthTable['geometry']): DoseDepthTable {
+  const stored = readReferenceJson<StoredTable>('responses-aluminium', `${geometry}.json`);
   const { effort, engineVersion, targetMaterialId } = stored;
   return {
-    geometry: 'slab',
+    geometry,
     materialId: 'Al',
     densityGPerCm3: material('Al').densityGPerCm3,
-    targetText: `0.1 mm of ${targetMaterialId} behind an aluminium slab, open behind; isotropic fluence on its outer face`,
+    targetText: TARGETS[geometry](targetMaterialId),
     depthsMm: stored.rows.map((row) => row.depthMm),
-    responses: stored.rows.map(({ sha256, description, notices, electron, proton }) => ({
+    responses: stored.rows.map(({ sha256, description, notices, referenceErrorRel, electron, proton }) => ({
       sha256,
       engineVersion,
       effort,
+      referenceErrorRel,
       targetMaterialId,
       description,
       notices,

@@ -6,8 +6,9 @@ import { AppError } from '../errors.ts';
 import type { EnvironmentChoice } from '../fluence/index.ts';
 import type { AssessmentResult, ResultNotice } from '../margin/index.ts';
 import {
+  doneShare,
   finishResponse,
-  planResponse,
+  planRound,
   type ResponseOptions,
   responseKey,
   type ShardTally,
@@ -78,16 +79,22 @@ export async function responseOf(
   const key = responseKey(stack, options);
   const known = await shop.artefacts.get<ShieldResponse>(key);
   if (known !== null) return { path: shop.artefacts.path(key)!, response: known };
-  const tasks = planResponse(stack, options);
-  const tallies: ShardTally[] = new Array(tasks.length);
-  let done = 0;
-  await Promise.all(
-    tasks.map(async (task, index) => {
-      tallies[index] = await shop.pool.run({ kind: 'shard', task }, signal);
-      done += 1;
-      onProgress(done / tasks.length);
-    }),
-  );
+  const tallies: ShardTally[] = [];
+  for (;;) {
+    const tasks = planRound(stack, options, tallies);
+    if (tasks.length === 0) break;
+    const before = doneShare(options, tallies);
+    let done = 0;
+    const round = await Promise.all(
+      tasks.map(async (task) => {
+        const tally = await shop.pool.run({ kind: 'shard', task }, signal);
+        done += 1;
+        onProgress(before + ((1 - before) * 0.9 * done) / tasks.length);
+        return tally;
+      }),
+    );
+    tallies.push(...round);
+  }
   const response = finishResponse(stack, options, tallies);
   return { path: shop.artefacts.put(key, 'response', response), response };
 }

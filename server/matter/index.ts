@@ -19,6 +19,6 @@ export {
 } from './electronStopping.ts';
 export { type MixtureInput, material, materials, mixture, zOverA } from './materials.ts';
 export { NEUTRON_1MEV_NIEL_MEV_CM2_PER_G, nielSilicon } from './niel.ts';
-export { photonAttenuation, photonCrossSections } from './photons.ts';
+export { photonAttenuation, photonCrossSections, photonEnergyAbsorption } from './photons.ts';
 export { ProtonRange, protonStopping } from './protonStopping.ts';
 export type { Constituent, Material, SternheimerFit } from './types.ts';

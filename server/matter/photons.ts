@@ -1,4 +1,5 @@
 import { readReferenceJson } from '../constants/reference.ts';
+import { ELECTRON_REST_MEV, radiationYield } from './electronStopping.ts';
 import type { Material } from './types.ts';
 
 interface PhotonRow {
@@ -53,4 +54,42 @@ export function photonCrossSections(of: Material, energyMeV: number): PhotonCros
 export function photonAttenuation(of: Material, energyMeV: number): number {
   const parts = photonCrossSections(of, energyMeV);
   return parts.photo + parts.compton + parts.rayleigh + parts.pair;
+}
+
+/**
+ * Mass energy-absorption coefficient, cm²/g: the energy that photons give to charged particles in first collisions, less
+ * what those radiate. Photoelectrons keep the whole energy (no fluorescence escapes), Compton electrons their mean share
+ * (Klein & Nishina 1929), pairs all but their rest energy. Valid 1 keV to 100 MeV.
+ *
+ * @source definition: ICRU Report 85 (2011); within 2 % of NIST XAAMDI in silicon from 20 keV to 20 MeV
+ */
+export function photonEnergyAbsorption(of: Material, energyMeV: number): number {
+  const { photo, compton, pair } = photonCrossSections(of, energyMeV);
+  const recoil = energyMeV * comptonRecoilShare(energyMeV);
+  const pairKinetic = Math.max(0, energyMeV - 2 * ELECTRON_REST_MEV);
+  const kept = (kinetic: number) => (kinetic > 0.01 ? 1 - radiationYield(of, kinetic) : 1);
+  return (
+    photo * kept(energyMeV) +
+    compton * (recoil / energyMeV) * kept(recoil) +
+    pair * (pairKinetic / energyMeV) * kept(pairKinetic / 2)
+  );
+}
+
+const SHARE_STEPS = 200;
+
+/** Mean share of its energy that a photon gives to a free electron at rest, by Simpson's rule over ln of the ratio. */
+function comptonRecoilShare(energyMeV: number): number {
+  const k = energyMeV / ELECTRON_REST_MEV;
+  const top = Math.log(1 + 2 * k);
+  let all = 0;
+  let given = 0;
+  for (let i = 0; i <= SHARE_STEPS; i++) {
+    const ratio = Math.exp((-top * i) / SHARE_STEPS);
+    const t = (1 - ratio) / (k * ratio);
+    const weight = (i === 0 || i === SHARE_STEPS ? 1 : i % 2 === 0 ? 2 : 4) * ratio;
+    const density = weight * (ratio + 1 / ratio - t * (2 - t));
+    all += density;
+    given += density * (1 - ratio);
+  }
+  return given / all;
 }

@@ -1,12 +1,12 @@
 import { contentHash } from '../canonical.ts';
-import { AppError } from '../errors.ts';
 import { material } from '../matter/index.ts';
 import { ELECTRON_EDGES_MEV } from '../numeric/spectrumGrid.ts';
 import { CROSSING, DAMAGE, DIRECT, ELECTRON, FROM_PHOTONS, Kernel } from '../transport/kernel.ts';
 import { protonResponse } from '../transport/protons.ts';
 import { GY_PER_MEV_PER_G } from '../units.ts';
 import { ENGINE_VERSION } from '../version.ts';
-import { aimAtCentre, sphereRadiusCm, TARGET_MM, transportOf } from './responsePlan.ts';
+import { EFFORT, histories, type Progress, REFERENCE_VERSION, worstReferenceError } from './effort.ts';
+import { aimAtCentre, aimSpread, sphereRadiusCm, TARGET_MM, transportOf } from './responsePlan.ts';
 import { describeStack, normaliseStack, type Stack } from './stack.ts';
 import type { EffortClass, ShieldResponse, StackInput, TargetMaterialId } from './types.ts';
 
@@ -16,95 +16,164 @@ export interface ResponseOptions {
   readonly seed: number;
 }
 
-/** A few electron bins of one response, with all it takes to run them elsewhere. */
+/** Histories of one electron bin from one stream. */
+export interface ShardPiece {
+  readonly bin: number;
+  /** Streams of a bin are numbered through all rounds. */
+  readonly stream: number;
+  readonly histories: number;
+}
+
+/** Some work of one response, with all it takes to run it elsewhere. */
 export interface ShardTask {
   readonly stack: StackInput;
   readonly targetMaterialId: TargetMaterialId;
   readonly seed: number;
-  readonly bins: readonly number[];
-  readonly histories: readonly number[];
+  readonly pieces: readonly ShardPiece[];
 }
 
-/** Sums over the histories of each bin of a shard, in the order of its bins. */
+/** Sums over the histories of each piece of a shard. */
 export interface ShardTally {
-  readonly bins: readonly number[];
-  readonly histories: readonly number[];
-  /** Shape (bins, TALLY_COLUMNS). */
+  readonly pieces: readonly ShardPiece[];
+  /** Shape (pieces, TALLY_COLUMNS). */
   readonly sums: Float64Array;
 }
 
-/** Sum and sum of squares of direct, photon-born, crossing; sum of damage. */
-const TALLY_COLUMNS = 7;
+/** Columns of a tally: sums, and sums of squares, over histories. */
+const DOSE = 0;
+const DOSE_SQUARE = 1;
+const PHOTON_DOSE = 2;
+const PHOTON_DOSE_SQUARE = 3;
+const CROSSED = 4;
+const CROSSED_SQUARE = 5;
+const DAMAGED = 6;
+/** Of direct and photon dose together: the two are not independent within a history. */
+const BOTH_SQUARE = 7;
+const COST = 8;
+const TALLY_COLUMNS = 9;
 const BINS = ELECTRON_EDGES_MEV.length - 1;
+/** About as many shards a round, so that workers stay busy and a cancelled job stops soon. */
 const SHARDS = 30;
-/** Histories of a bin; bins above the knee of their cost get fewer, see `historiesOf`. */
-const HISTORIES: Readonly<Record<EffortClass, number>> = { standard: 3000, fine: 40_000 };
-/** Spheres have a target a thousandth of the size: their histories are cheaper and tell less. */
-const SPHERE_FACTOR = 3;
-/** Above this energy the cost of a history grows while belts thin out, MeV. */
-const FULL_BELOW_MEV = 8;
 
 /**
- * The work of one response: bins dealt out in turn, so that shards cost about the same. Streams hang on seed and bin
- * alone, so that the result does not depend on who runs which shard.
+ * The next round of a response: first a few histories of every bin, then, by what the rounds before have found, as many as
+ * make the dose of every reference spectrum as sure as the effort class asks. Streams hang on seed, bin and number alone,
+ * and rounds on merged tallies, so that the result does not depend on who runs which shard.
  *
- * @throws {AppError} STACK_INVALID, MATERIAL_UNKNOWN, RESPONSE_UNSUPPORTED
+ * @param tallies - of all rounds so far, in the order of their tasks
+ * @returns no task when the error is reached, or the cost allowed used up
+ * @throws {AppError} STACK_INVALID, MATERIAL_UNKNOWN
  */
-export function planResponse(stack: StackInput, options: ResponseOptions): ShardTask[] {
+export function planRound(stack: StackInput, options: ResponseOptions, tallies: readonly ShardTally[]): ShardTask[] {
   normaliseStack(stack);
-  refuseUnsupported(stack);
-  const { targetMaterialId, seed, effort } = options;
-  const full = HISTORIES[effort] * (stack.geometry === 'sphere' ? SPHERE_FACTOR : 1);
-  return Array.from({ length: SHARDS }, (_, shard) => {
-    const bins = Array.from({ length: BINS }, (_, bin) => bin).filter((bin) => bin % SHARDS === shard);
-    return { stack, targetMaterialId, seed, bins, histories: bins.map((bin) => historiesOf(bin, full)) };
-  });
+  const limits = EFFORT[options.effort];
+  const sums = merged(tallies);
+  const first = tallies.length === 0;
+  const progress = progressOf(sums);
+  const more = first ? new Float64Array(BINS).fill(limits.pilot) : histories(progress, limits);
+  const cost = (bin: number) => more[bin] * (first ? 1 : progress.cost[bin]);
+  const total = more.reduce((sum, _, bin) => sum + cost(bin), 0);
+  const pieces: ShardPiece[] = [];
+  for (let bin = 0; bin < BINS; bin++) {
+    if (more[bin] === 0) continue;
+    const cuts = Math.max(1, Math.ceil((cost(bin) * SHARDS) / total));
+    for (let k = 0; k < cuts; k++) {
+      const count = Math.floor(((k + 1) * more[bin]) / cuts) - Math.floor((k * more[bin]) / cuts);
+      if (count > 0) pieces.push({ bin, stream: sums.streams[bin] + k, histories: count });
+    }
+  }
+  const { targetMaterialId, seed } = options;
+  return Array.from({ length: Math.min(SHARDS, pieces.length) }, (_, shard) => ({
+    stack,
+    targetMaterialId,
+    seed,
+    pieces: pieces.filter((_piece, index) => index % SHARDS === shard),
+  }));
 }
 
-function historiesOf(bin: number, full: number): number {
-  const middle = Math.sqrt(ELECTRON_EDGES_MEV[bin] * ELECTRON_EDGES_MEV[bin + 1]);
-  return Math.ceil(full * Math.min(1, FULL_BELOW_MEV / middle));
+/** Share of a response that is done, by the cost of what the error still asks for; for progress only. */
+export function doneShare(options: ResponseOptions, tallies: readonly ShardTally[]): number {
+  if (tallies.length === 0) return 0;
+  const progress = progressOf(merged(tallies));
+  if (progress.histories.some((count) => count === 0)) return 0.05;
+  const more = histories(progress, EFFORT[options.effort]);
+  const sum = (counts: Float64Array) => counts.reduce((total, count, bin) => total + count * progress.cost[bin], 0);
+  const done = sum(progress.histories);
+  return done / (done + sum(more));
 }
 
-function refuseUnsupported(stack: StackInput): void {
-  if (stack.geometry !== 'shell') return;
-  throw new AppError(
-    'RESPONSE_UNSUPPORTED',
-    'Electrons are carried through slabs and solid spheres; geometry "shell" has no electron response. Give the stack as a solid sphere or as a slab.',
-    [{ pointer: '#/geometry', detail: 'no electron response for this geometry', got: 'shell', limit: 'slab, sphere' }],
-  );
+interface Merged {
+  readonly histories: Float64Array;
+  readonly streams: Int32Array;
+  /** Shape (BINS, TALLY_COLUMNS). */
+  readonly sums: Float64Array;
+}
+
+function merged(tallies: readonly ShardTally[]): Merged {
+  const all = {
+    histories: new Float64Array(BINS),
+    streams: new Int32Array(BINS),
+    sums: new Float64Array(BINS * TALLY_COLUMNS),
+  };
+  // Sums of doubles depend on their order: streams of a bin are added in the order of their numbers.
+  const pieces = tallies.flatMap((tally) => tally.pieces.map((piece, index) => ({ piece, tally, index })));
+  pieces.sort((a, b) => a.piece.bin - b.piece.bin || a.piece.stream - b.piece.stream);
+  for (const { piece, tally, index } of pieces) {
+    all.histories[piece.bin] += piece.histories;
+    all.streams[piece.bin] += 1;
+    for (let k = 0; k < TALLY_COLUMNS; k++) {
+      all.sums[piece.bin * TALLY_COLUMNS + k] += tally.sums[index * TALLY_COLUMNS + k];
+    }
+  }
+  return all;
+}
+
+function progressOf({ histories: n, sums }: Merged): Progress {
+  const at = (bin: number, column: number) => sums[bin * TALLY_COLUMNS + column] / n[bin];
+  const mean = n.map((_, bin) => at(bin, DOSE) + at(bin, PHOTON_DOSE));
+  return {
+    histories: n,
+    mean,
+    variance: n.map((count, bin) => (Math.max(0, at(bin, BOTH_SQUARE) - mean[bin] ** 2) * count) / (count - 1)),
+    cost: n.map((_, bin) => at(bin, COST)),
+  };
 }
 
 /** Runs the histories of one shard. */
 export function runShard(task: ShardTask): ShardTally {
-  const sums = new Float64Array(task.bins.length * TALLY_COLUMNS);
+  const sums = new Float64Array(task.pieces.length * TALLY_COLUMNS);
   const aim = new Float64Array(2);
-  const epsilon = (0.1 * TARGET_MM) ** 2 / sphereRadiusCm(normaliseStack(task.stack)) ** 2;
-  for (const [index, bin] of task.bins.entries()) {
+  const stack = normaliseStack(task.stack);
+  const epsilon = aimSpread(stack);
+  for (const [index, { bin, stream, histories: count }] of task.pieces.entries()) {
     const low = ELECTRON_EDGES_MEV[bin];
     const ratio = Math.log(ELECTRON_EDGES_MEV[bin + 1] / low);
-    const { geometry, options } = transportOf(task.stack, task.targetMaterialId, low * Math.exp(ratio / 2));
+    const { geometry, options } = transportOf(stack, task.targetMaterialId, low * Math.exp(ratio));
     const kernel = new Kernel(geometry, options);
     const { generator, score } = kernel;
-    generator.start(task.seed, bin, 0);
+    generator.start(task.seed, bin, stream);
     const at = index * TALLY_COLUMNS;
-    for (let i = 0; i < task.histories[index]; i++) {
+    for (let i = 0; i < count; i++) {
       const energy = low * Math.exp(ratio * generator.next());
       // Isotropic fluence: crossings of the outer face follow the cosine law.
       if (geometry.spherical) {
         aimAtCentre(epsilon, generator.next(), generator.next(), aim);
         kernel.history(ELECTRON, energy, aim[0], aim[1]);
       } else kernel.history(ELECTRON, energy, Math.sqrt(generator.next()));
-      sums[at] += score[DIRECT];
-      sums[at + 1] += score[DIRECT] ** 2;
-      sums[at + 2] += score[FROM_PHOTONS];
-      sums[at + 3] += score[FROM_PHOTONS] ** 2;
-      sums[at + 4] += score[CROSSING];
-      sums[at + 5] += score[CROSSING] ** 2;
-      sums[at + 6] += score[DAMAGE];
+      const dose = score[DIRECT];
+      const photonDose = score[FROM_PHOTONS];
+      sums[at + DOSE] += dose;
+      sums[at + DOSE_SQUARE] += dose * dose;
+      sums[at + PHOTON_DOSE] += photonDose;
+      sums[at + PHOTON_DOSE_SQUARE] += photonDose * photonDose;
+      sums[at + CROSSED] += score[CROSSING];
+      sums[at + CROSSED_SQUARE] += score[CROSSING] ** 2;
+      sums[at + DAMAGED] += score[DAMAGE];
+      sums[at + BOTH_SQUARE] += (dose + photonDose) ** 2;
     }
+    sums[at + COST] = kernel.steps + kernel.flights;
   }
-  return { bins: task.bins, histories: task.histories, sums };
+  return { pieces: task.pieces, sums };
 }
 
 /** Puts the tallies of all shards together, adds the protons; bit-identical for any order of work. */
@@ -127,40 +196,54 @@ export function finishResponse(
   };
   const { perGram, perArea } = perFluence(checked, target.densityGPerCm3);
   const toGy = perGram * GY_PER_MEV_PER_G;
-  for (const { bins, histories, sums } of tallies) {
-    for (const [index, bin] of bins.entries()) {
-      const at = index * TALLY_COLUMNS;
-      const n = histories[index];
-      const sigma = (column: number) =>
-        Math.sqrt(Math.max(0, sums[at + column + 1] / n - (sums[at + column] / n) ** 2) / (n - 1));
-      electron.doseGyCm2[bin] = (toGy * sums[at]) / n;
-      electron.doseSigmaGyCm2[bin] = toGy * sigma(0);
-      electron.bremsstrahlungGyCm2[bin] = (toGy * sums[at + 2]) / n;
-      electron.bremsstrahlungSigmaGyCm2[bin] = toGy * sigma(2);
-      electron.transmitted[bin] = (perArea * sums[at + 4]) / n;
-      electron.transmittedSigma[bin] = perArea * sigma(4);
-      electron.damageMeVCm2PerG[bin] = (perGram * sums[at + 6]) / n;
-    }
+  const all = merged(tallies);
+  for (let bin = 0; bin < BINS; bin++) {
+    const n = all.histories[bin];
+    if (n === 0) continue;
+    const mean = (column: number) => all.sums[bin * TALLY_COLUMNS + column] / n;
+    const sigma = (column: number) => Math.sqrt(Math.max(0, mean(column + 1) - mean(column) ** 2) / (n - 1));
+    electron.doseGyCm2[bin] = toGy * mean(DOSE);
+    electron.doseSigmaGyCm2[bin] = toGy * sigma(DOSE);
+    electron.bremsstrahlungGyCm2[bin] = toGy * mean(PHOTON_DOSE);
+    electron.bremsstrahlungSigmaGyCm2[bin] = toGy * sigma(PHOTON_DOSE);
+    electron.transmitted[bin] = perArea * mean(CROSSED);
+    electron.transmittedSigma[bin] = perArea * sigma(CROSSED);
+    electron.damageMeVCm2PerG[bin] = perGram * mean(DAMAGED);
   }
+  const referenceErrorRel = worstReferenceError(progressOf(all));
   const proton = protonResponse(checked.geometry === 'slab' ? 'slab' : 'sphere', checked.layers, target, sizeGPerCm2);
   return {
     sha256: responseKey(stack, options),
     engineVersion: ENGINE_VERSION,
     effort: options.effort,
+    referenceErrorRel,
     targetMaterialId: options.targetMaterialId,
-    description:
-      checked.geometry === 'slab'
-        ? `${describeStack(checked)}; target ${TARGET_MM} mm of ${options.targetMaterialId} behind it; isotropic fluence on the outer face, slant paths carried as they are`
-        : `${describeStack(checked)}; target a ball of ${options.targetMaterialId} of ${TARGET_MM} mm radius at its centre; isotropic fluence, electrons carried as they scatter, protons straight ahead`,
+    description: `${describeStack(checked)}; ${targetText(checked, options.targetMaterialId)}`,
     electron,
     proton,
     notices: [
       'Protons slow down along straight paths; nuclear reactions are not included.',
-      ...(checked.geometry === 'sphere'
-        ? ['Spheres carry larger statistical errors than slabs, above all where only bremsstrahlung is left.']
-        : []),
+      ...(referenceErrorRel <= REACHED * EFFORT[options.effort].errorRel
+        ? []
+        : [
+            `Behind ${describeStack(checked)} the statistical error of the dose reached ${(100 * referenceErrorRel).toPrecision(2)} % in the least sure of the reference spectra within the effort allowed.`,
+          ]),
     ],
   };
+}
+
+/** An error this many times the one asked for counts as reached: variances are estimates. */
+const REACHED = 1.1;
+
+function targetText({ geometry }: Stack, targetMaterialId: string): string {
+  switch (geometry) {
+    case 'slab':
+      return `target ${TARGET_MM} mm of ${targetMaterialId} behind it; isotropic fluence on the outer face, slant paths carried as they are`;
+    case 'sphere':
+      return `target a ball of ${targetMaterialId} of ${TARGET_MM} mm radius at its centre; isotropic fluence, electrons carried as they scatter, protons straight ahead`;
+    case 'shell':
+      return `target a ball of ${targetMaterialId} of ${TARGET_MM} mm radius at the centre of the cavity; isotropic fluence, electrons carried as they scatter, protons straight ahead`;
+  }
 }
 
 /** What a sum per history becomes per unit 4π-integrated fluence: per gram of the target, and per cm² of its surface. */
@@ -181,6 +264,7 @@ export function responseKey(stack: StackInput, options: ResponseOptions): string
   return contentHash({
     kind: 'shieldResponse',
     engineVersion: ENGINE_VERSION,
+    referenceVersion: REFERENCE_VERSION,
     ...options,
     geometry,
     backing,
@@ -191,5 +275,10 @@ export function responseKey(stack: StackInput, options: ResponseOptions): string
 
 /** The whole response in one go. */
 export function shieldResponse(stack: StackInput, options: ResponseOptions): ShieldResponse {
-  return finishResponse(stack, options, planResponse(stack, options).map(runShard));
+  const tallies: ShardTally[] = [];
+  for (;;) {
+    const tasks = planRound(stack, options, tallies);
+    if (tasks.length === 0) return finishResponse(stack, options, tallies);
+    for (const task of tasks) tallies.push(runShard(task));
+  }
 }

@@ -1,7 +1,9 @@
-import { electronCsdaRange, type Material, material } from '../matter/index.ts';
+import { electronCsdaRange, material } from '../matter/index.ts';
 import type { TransportGeometry, TransportLayer, TransportOptions } from '../transport/geometry.ts';
-import { normaliseStack, type Stack } from './stack.ts';
-import type { StackInput, TargetMaterialId } from './types.ts';
+import { CAVITY_SINE } from '../transport/kernel.ts';
+import { hardRates } from '../transport/tables.ts';
+import type { Stack } from './stack.ts';
+import type { TargetMaterialId } from './types.ts';
 
 /** Target: a layer this thick behind slabs, a ball of this radius at the centre of spheres and shells, mm. */
 export const TARGET_MM = 0.1;
@@ -17,26 +19,50 @@ const SPLIT_DEPTHS = [0.3, 0.5, 0.7, 0.85];
 /** Electrons whose range is below this many shield thicknesses are split on their way. */
 const SPLIT_BELOW_RANGE = 2.5;
 
-interface Piece {
-  readonly material: Material;
-  readonly thickness: number;
-}
-
 /** What the histories of one electron bin run through, and with which cuts. */
 export function transportOf(
-  stack: StackInput,
+  stack: Stack,
   target: TargetMaterialId,
   energyMeV: number,
 ): { geometry: TransportGeometry; options: TransportOptions } {
-  const checked = normaliseStack(stack);
-  return checked.geometry === 'slab'
-    ? slabTransport(checked, target, energyMeV)
-    : sphereTransport(checked, target, energyMeV);
+  switch (stack.geometry) {
+    case 'slab':
+      return slabTransport(stack, target, energyMeV);
+    case 'sphere':
+      return sphereTransport(stack, target, energyMeV);
+    case 'shell':
+      return shellTransport(stack, target, energyMeV);
+  }
 }
 
-/** Outer radius of a solid sphere about its target, cm. */
+/** Mean atomic numbers by mass between which matter in front of the target gives it the electrons that silicon would. */
+const LIKE_TARGET_Z = [10, 15] as const;
+
+/**
+ * Whether the photon dose may count by kerma: at least one range of the bin's electrons of matter like the target's lies
+ * about it, so that the electrons which photons set free are in equilibrium there. Open slabs have none behind.
+ */
+function kermaHolds({ geometry, backing, layers }: Stack, energyMeV: number): boolean {
+  if (geometry === 'slab' && backing === 'none') return false;
+  let facing = 0;
+  for (let i = layers.length - 1; i >= 0; i--) {
+    const z = layers[i].material.constituents.reduce((sum, part) => sum + part.massFraction * part.z, 0);
+    if (z < LIKE_TARGET_Z[0] || z > LIKE_TARGET_Z[1]) break;
+    facing += layers[i].arealDensityGPerCm2;
+  }
+  return facing > 0 && facing >= electronCsdaRange(layers[layers.length - 1].material, energyMeV);
+}
+
+/** Outer radius of a solid sphere about its target, or of a shell, cm. */
 export function sphereRadiusCm(stack: Stack): number {
-  return 0.1 * (TARGET_MM + stack.layers.reduce((sum, layer) => sum + layer.thicknessMm, 0));
+  const inside = stack.innerRadiusMm ?? TARGET_MM;
+  return 0.1 * (inside + stack.layers.reduce((sum, layer) => sum + layer.thicknessMm, 0));
+}
+
+/** Sine squared within which a particle is aimed at: the ball, or the cone that a cavity looks at. */
+export function aimSpread(stack: Stack): number {
+  const aimed = stack.geometry === 'shell' ? CAVITY_SINE * (stack.innerRadiusMm ?? 0) : TARGET_MM;
+  return (0.1 * aimed) ** 2 / sphereRadiusCm(stack) ** 2;
 }
 
 /**
@@ -60,100 +86,160 @@ const AIMED_SHARE = 0.8;
  * that head for the centre are split on their way.
  */
 function sphereTransport(
-  { layers, arealDensityGPerCm2: total }: Stack,
+  stack: Stack,
   target: TargetMaterialId,
   energyMeV: number,
 ): { geometry: TransportGeometry; options: TransportOptions } {
-  const of = material(target);
+  const { layers, arealDensityGPerCm2: total } = stack;
   const ball = 0.1 * TARGET_MM;
-  const outer = ball + 0.1 * layers.reduce((sum, layer) => sum + layer.thicknessMm, 0);
+  const outer = sphereRadiusCm(stack);
   const radii: number[] = [];
   for (let radius = 2 * ball; radius < 0.75 * outer; radius *= 2) radii.push(radius);
   const rangeRatio = electronCsdaRange(layers[0].material, energyMeV) / total;
   const step = rangeRatio < 4 ? 4 : rangeRatio < 20 ? 2 : 1;
+  const kerma = kermaHolds(stack, energyMeV);
   const importanceAt = (radius: number) => step ** radii.filter((mark) => mark > radius).length;
   const transport: TransportLayer[] = [
-    { material: of, thickness: ball, importance: importanceAt(0), forcing: TARGET_FORCING },
+    { material: material(target), thickness: ball, importance: importanceAt(0), forcing: kerma ? 1 : TARGET_FORCING },
   ];
   let bottom = ball;
   let depth = 0;
   for (const layer of [...layers].reverse()) {
-    const density = layer.material.densityGPerCm3;
     const top = bottom + 0.1 * layer.thicknessMm;
-    const zone = bottom + (ZONE_G_PER_CM2 - depth) / density;
-    const inside = [...radii, zone].filter((at) => at > bottom * (1 + 1e-9) && at < top * (1 - 1e-9));
-    let from = bottom;
-    for (const cut of [...inside.sort((a, b) => a - b), top]) {
-      const middle = 0.5 * (from + cut);
+    const zone = kerma ? 0 : bottom + (ZONE_G_PER_CM2 - depth) / layer.material.densityGPerCm3;
+    for (const { from, to } of pieces(bottom, top, [...radii, zone])) {
+      const middle = 0.5 * (from + to);
       transport.push({
         material: layer.material,
-        thickness: cut - from,
+        thickness: to - from,
         importance: importanceAt(middle),
         forcing: middle < zone ? ZONE_FORCING : 1,
       });
-      from = cut;
     }
     depth += layer.arealDensityGPerCm2;
     bottom = top;
   }
   return {
     geometry: { spherical: true, layers: transport, target: 0 },
-    options: { ...cutsFor(energyMeV), photons: true, survival: 0.25, photonSplit: rangeRatio > 0.8 ? 2 : 8, bins: 0 },
+    options: optionsFor(stack, energyMeV, kerma),
   };
 }
 
-function slabTransport(
-  { layers, backing, arealDensityGPerCm2: total }: Stack,
+/**
+ * A shell about an empty cavity with a ball of target at its centre. Electrons that slow down in the shell are split on
+ * their way inward, as in slabs; the cavity turns what crosses it near the centre into what meets the ball.
+ */
+function shellTransport(
+  stack: Stack,
   target: TargetMaterialId,
   energyMeV: number,
 ): { geometry: TransportGeometry; options: TransportOptions } {
-  const pieces: Piece[] = layers.map((layer) => ({ material: layer.material, thickness: layer.arealDensityGPerCm2 }));
-  const outermost = pieces[0].material;
-  const rangeRatio = electronCsdaRange(outermost, energyMeV) / total;
-  const split = rangeRatio < SPLIT_BELOW_RANGE;
-  const marks = split ? SPLIT_DEPTHS.map((share) => share * total) : [];
-  const zone = Math.max(0, total - ZONE_G_PER_CM2);
-  const cuts = [...marks, zone].sort((a, b) => a - b);
+  const { layers, innerRadiusMm, arealDensityGPerCm2: total } = stack;
+  const ball = 0.1 * TARGET_MM;
+  const inner = 0.1 * (innerRadiusMm ?? 0);
+  const rangeRatio = electronCsdaRange(layers[0].material, energyMeV) / total;
+  const marks = rangeRatio < SPLIT_BELOW_RANGE ? SPLIT_DEPTHS.map((share) => (1 - share) * total) : [];
+  const kerma = kermaHolds(stack, energyMeV);
+  const importanceAt = (depth: number) => 2 ** marks.filter((mark) => mark > depth).length;
+  const transport: TransportLayer[] = [
+    { material: material(target), thickness: ball, importance: importanceAt(0), forcing: kerma ? 1 : TARGET_FORCING },
+    { material: null, thickness: inner - ball, importance: importanceAt(0), forcing: 1 },
+  ];
+  let bottom = 0;
+  for (const layer of [...layers].reverse()) {
+    const top = bottom + layer.arealDensityGPerCm2;
+    for (const { from, to } of pieces(bottom, top, [...marks, kerma ? 0 : ZONE_G_PER_CM2])) {
+      const middle = 0.5 * (from + to);
+      transport.push({
+        material: layer.material,
+        thickness: (to - from) / layer.material.densityGPerCm3,
+        importance: importanceAt(middle),
+        forcing: !kerma && middle < ZONE_G_PER_CM2 ? ZONE_FORCING : 1,
+      });
+    }
+    bottom = top;
+  }
+  return {
+    geometry: { spherical: true, layers: transport, target: 0 },
+    options: optionsFor(stack, energyMeV, kerma),
+  };
+}
+
+/** The stretches into which `cuts` divide a layer, ascending. */
+function pieces(bottom: number, top: number, cuts: readonly number[]): { from: number; to: number }[] {
+  const inside = cuts.filter((at) => at > bottom * (1 + 1e-9) && at > 0 && at < top * (1 - 1e-9));
+  const edges = [bottom, ...inside.sort((a, b) => a - b), top];
+  return edges.slice(1).map((to, i) => ({ from: edges[i], to }));
+}
+
+function slabTransport(
+  stack: Stack,
+  target: TargetMaterialId,
+  energyMeV: number,
+): { geometry: TransportGeometry; options: TransportOptions } {
+  const { layers, backing, arealDensityGPerCm2: total } = stack;
+  const rangeRatio = electronCsdaRange(layers[0].material, energyMeV) / total;
+  const marks = rangeRatio < SPLIT_BELOW_RANGE ? SPLIT_DEPTHS.map((share) => share * total) : [];
+  const kerma = kermaHolds(stack, energyMeV);
+  const zone = kerma ? total : Math.max(0, total - ZONE_G_PER_CM2);
   const transport: TransportLayer[] = [];
   let top = 0;
-  for (const piece of pieces) {
-    const bottom = top + piece.thickness;
-    let from = top;
-    for (const cut of [...cuts.filter((at) => at > top * (1 + 1e-9) && at < bottom * (1 - 1e-9)), bottom]) {
-      const middle = 0.5 * (from + cut);
+  for (const layer of layers) {
+    const bottom = top + layer.arealDensityGPerCm2;
+    for (const { from, to } of pieces(top, bottom, [...marks, zone])) {
+      const middle = 0.5 * (from + to);
       transport.push({
-        material: piece.material,
-        thickness: cut - from,
+        material: layer.material,
+        thickness: to - from,
         importance: 2 ** marks.filter((mark) => mark < middle).length,
         forcing: middle > zone ? ZONE_FORCING : 1,
       });
-      from = cut;
     }
     top = bottom;
   }
   const importance = 2 ** marks.length;
   const of = material(target);
   const targetIndex = transport.length;
-  transport.push({
-    material: of,
-    thickness: 0.1 * TARGET_MM * of.densityGPerCm3,
-    importance,
-    forcing: TARGET_FORCING,
-  });
+  const thickness = 0.1 * TARGET_MM * of.densityGPerCm3;
+  transport.push({ material: of, thickness, importance, forcing: kerma ? 1 : TARGET_FORCING });
   if (backing === 'same') {
-    const last = pieces[pieces.length - 1].material;
-    transport.push({ material: last, thickness: ZONE_G_PER_CM2, importance, forcing: ZONE_FORCING });
+    const last = layers[layers.length - 1].material;
+    const forcing = kerma ? 1 : ZONE_FORCING;
+    transport.push({ material: last, thickness: ZONE_G_PER_CM2, importance, forcing });
     transport.push({ material: last, thickness: BACKING_G_PER_CM2 - ZONE_G_PER_CM2, importance, forcing: 1 });
   }
   return {
     geometry: { spherical: false, layers: transport, target: targetIndex },
-    options: { ...cutsFor(energyMeV), photons: true, survival: 0.25, photonSplit: rangeRatio < 1.2 ? 12 : 4, bins: 0 },
+    options: optionsFor(stack, energyMeV, kerma),
   };
 }
 
+/** Electrons below this share of the energy that entered stop at once where they cannot leave their layer. */
+const STAY_SHARE = 0.05;
+/** Odds of survival of electrons that cannot reach the target. */
+const SURVIVAL = 0.25;
+
+/**
+ * Electrons radiate this many times as often as they are scattered through large angles, and at most so many times as often
+ * as in nature. Photons that count by their electrons are dearer than those that count by expectation.
+ */
+const FORCED_RADIATION = { kerma: { perScattering: 0.5, most: 1000 }, electrons: { perScattering: 0.05, most: 50 } };
+
 /** Cuts that keep what happens below them inside the target and the last layers of the shield. */
-export function cutsFor(energyMeV: number): { cutMeV: number; absorbMeV: number } {
-  if (energyMeV < 0.1) return { cutMeV: 0.004, absorbMeV: 0.004 };
-  if (energyMeV < 0.5) return { cutMeV: 0.01, absorbMeV: 0.01 };
-  return energyMeV < 10 ? { cutMeV: 0.02, absorbMeV: 0.02 } : { cutMeV: 0.04, absorbMeV: 0.02 };
+function optionsFor({ layers }: Stack, energyMeV: number, kerma: boolean): TransportOptions {
+  const [cutMeV, absorbMeV] =
+    energyMeV < 0.1 ? [0.004, 0.004] : energyMeV < 0.5 ? [0.01, 0.01] : energyMeV < 10 ? [0.02, 0.02] : [0.04, 0.02];
+  const { elastic, brems } = hardRates(layers[0].material, energyMeV, cutMeV);
+  const { perScattering, most } = kerma ? FORCED_RADIATION.kerma : FORCED_RADIATION.electrons;
+  const radiativeForcing = Math.min(most, Math.max(1, (perScattering * elastic) / brems));
+  return {
+    cutMeV,
+    absorbMeV,
+    photons: true,
+    survival: SURVIVAL,
+    radiativeForcing,
+    stayShare: STAY_SHARE,
+    kerma,
+    bins: 0,
+  };
 }

@@ -48,6 +48,8 @@ export interface ShieldResponse {
   readonly sha256: string;
   readonly engineVersion: string;
   readonly effort: EffortClass;
+  /** Largest relative standard error of the dose among the reference spectra. */
+  readonly referenceErrorRel: number;
   readonly targetMaterialId: TargetMaterialId;
   /** One line for the report: geometry, target size, backing, and how slant paths were treated. */
   readonly description: string;

@@ -61,6 +61,8 @@ const ABSORB_MEV = 0.005;
 /** Losses above are drawn one by one: this share of the energy between the two limits, MeV. */
 const CUT_SHARE = 0.01;
 const CUT_LIMITS_MEV = [0.005, 0.05] as const;
+/** Electrons below this share of the beam energy stop where they cannot leave their layer or their depth bin. */
+const STAY_SHARE = 0.05;
 
 /**
  * Runs one beam case, every particle followed without weights.
@@ -81,7 +83,16 @@ export function runBeam(input: BeamCase, clockMs: () => number): BeamResult {
       target: -1,
       layers: layers.map((layer) => ({ ...layer, importance: 1, forcing: 1 })),
     },
-    { cutMeV, absorbMeV: ABSORB_MEV, photons: input.photons, survival: 1, photonSplit: 1, bins },
+    {
+      cutMeV,
+      absorbMeV: ABSORB_MEV,
+      photons: input.photons,
+      survival: 1,
+      radiativeForcing: 1,
+      stayShare: STAY_SHARE,
+      kerma: false,
+      bins,
+    },
   );
   const { generator, score, binEnergy, binCharge } = kernel;
   generator.start(seed, 0, 0);

@@ -5,12 +5,12 @@ import {
   mottRatio,
   rutherfordStrength,
 } from '../matter/index.ts';
-import { ELASTIC_QUANTILES } from './layout.ts';
+import { ELASTIC_QUANTILES, quantileShare } from './layout.ts';
 
 /** Steps of the angular integrals, equal in ln(1 + μ/A). */
 const STEPS = 256;
 /** Share of the transport mean free path up to which hard collisions are drawn together. */
-const HARD_SHARE = 0.1;
+const HARD_SHARE = 0.2;
 
 export interface ElasticRow {
   /** Hard collisions per g/cm². */
@@ -78,7 +78,7 @@ export function elasticRow(of: Material, energyMeV: number, quantiles: Float64Ar
   const soft1 = first[j] + share * (first[j + 1] - first[j]);
   const soft2 = second[j] + share * (second[j + 1] - second[j]);
   for (let q = 0; q < ELASTIC_QUANTILES; q++) {
-    const target = total - hard + (hard * q) / (ELASTIC_QUANTILES - 1);
+    const target = total - hard + hard * quantileShare(q);
     while (j < STEPS - 1 && cumulative[j + 1] < target) j += 1;
     const within = Math.min(1, (target - cumulative[j]) / (cumulative[j + 1] - cumulative[j]));
     const low = 1 / (a * Math.exp(j * h));

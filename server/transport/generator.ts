@@ -3,6 +3,9 @@
  * draw is one read. The stream is fixed by three keys.
  */
 const SIZE = 4096;
+/** Deviates of one step are read without a test of the end; this many must be left at its start. */
+const STEP_RESERVE = 16;
+export const LAST_STEP_START = SIZE - STEP_RESERVE;
 
 export class Generator {
   readonly values = new Float64Array(SIZE);
@@ -15,18 +18,20 @@ export class Generator {
     this.state[1] = mix(shard ^ 0x9e3779b9);
     this.state[2] = mix(index ^ 0x85ebca6b);
     this.state[3] = 1;
-    this.at = SIZE;
     for (let i = 0; i < 15; i++) this.fill(1);
     this.at = SIZE;
   }
 
   /** Uniform on (0, 1): never 0, so that its logarithm is finite. */
   next(): number {
-    if (this.at === SIZE) {
-      this.fill(SIZE);
-      this.at = 0;
-    }
+    if (this.at === SIZE) this.refill();
     return this.values[this.at++];
+  }
+
+  /** Fills the buffer anew and goes to its start; what was left of it is passed over. */
+  refill(): void {
+    this.fill(SIZE);
+    this.at = 0;
   }
 
   private fill(count: number): void {

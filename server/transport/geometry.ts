@@ -2,7 +2,7 @@ import type { Material } from '../matter/index.ts';
 
 /** One layer as the histories see it. */
 export interface TransportLayer {
-  /** null is empty space (shells only). */
+  /** null is empty space: the cavity of a shell, right outside its ball. */
   readonly material: Material | null;
   /** Thickness: g/cm² in slabs, cm in spheres. */
   readonly thickness: number;
@@ -32,8 +32,12 @@ export interface TransportOptions {
   readonly photons: boolean;
   /** Odds of survival of electrons whose range does not reach the target; 1 switches the roulette off. */
   readonly survival: number;
-  /** Photons emitted in place of one, each weighing as much less. */
-  readonly photonSplit: number;
+  /** Electrons radiate this many times as often, each photon weighing as much less; 1 is analog. */
+  readonly radiativeForcing: number;
+  /** Electrons below this share of the energy of their history stop at once where they cannot leave their layer. */
+  readonly stayShare: number;
+  /** Photon dose in the target by expected kerma along each flight, instead of by the electrons set free there. */
+  readonly kerma: boolean;
   /** Number of equal depth bins over a slab; 0 for none. */
   readonly bins: number;
 }

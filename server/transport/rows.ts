@@ -20,6 +20,16 @@ export function rowEnergyMeV(row: number): number {
   return 2 ** (LOWEST_EXPONENT + octave) * (1 + (row - octave * ROWS_PER_OCTAVE) / ROWS_PER_OCTAVE);
 }
 
+const INVERSE_WIDTH = Float64Array.from(
+  { length: ROW_COUNT },
+  (_, row) => 1 / (rowEnergyMeV(row + 1) - rowEnergyMeV(row)),
+);
+
+/** One over the width of a row, 1/MeV. */
+export function inverseRowWidth(row: number): number {
+  return INVERSE_WIDTH[row];
+}
+
 /** A float and its bits: `bits.float[0] = energy`, then row and fraction from `bits.int[0]`. */
 export function makeBits(): { readonly float: Float32Array; readonly int: Int32Array } {
   const float = new Float32Array(1);

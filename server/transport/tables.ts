@@ -15,10 +15,12 @@ import {
   ELASTIC_QUANTILES,
   ELECTRON_COLUMNS,
   PHOTON_COLUMNS,
+  PHOTON_COMPTON,
+  PHOTON_PAIR,
   RANGE,
-  RATE_BOUND,
   RATE_BREMS,
   RATE_ELASTIC,
+  RATE_HARD,
   RATE_MOLLER,
   SOFT_1,
   SOFT_2,
@@ -44,8 +46,6 @@ export interface TransportTables {
 
 /** Largest share of its energy that an electron loses softly in one step. */
 export const STEP_LOSS_SHARE = 0.08;
-/** Rows a step may fall through: the rate bound covers them (16 rows an octave, 8 % loss with straggling < 6 rows). */
-const BOUND_ROWS = 6;
 const SHAPE_STEPS = 400;
 /** Lowest photon of the spectral integrals, as a share of the electron energy. */
 const SHAPE_START = 1e-4;
@@ -65,6 +65,15 @@ export function transportTables(of: Material, cutMeV: number): TransportTables {
     byCut.set(cutMeV, tables);
   }
   return tables;
+}
+
+/** Rates of large-angle scattering and of bremsstrahlung above the cut near an energy, per g/cm². */
+export function hardRates(of: Material, energyMeV: number, cutMeV: number): { elastic: number; brems: number } {
+  const { electron } = transportTables(of, cutMeV);
+  let row = 0;
+  while (row < ROW_COUNT - 1 && rowEnergyMeV(row + 1) <= energyMeV) row += 1;
+  const at = row * ELECTRON_COLUMNS;
+  return { elastic: electron[at + RATE_ELASTIC], brems: electron[at + RATE_BREMS] };
 }
 
 function buildTables(of: Material, cutMeV: number): TransportTables {
@@ -107,6 +116,7 @@ function buildTables(of: Material, cutMeV: number): TransportTables {
     electron[at + RATE_ELASTIC] = elastic.hard;
     electron[at + RATE_MOLLER] = cutMeV < energy / 2 ? mollerRate(of, energy, cutMeV) : 0;
     electron[at + RATE_BREMS] = brems.rate;
+    electron[at + RATE_HARD] = electron[at + RATE_ELASTIC] + electron[at + RATE_MOLLER] + brems.rate;
     electron[at + SOFT_1] = elastic.soft1 + electronSoft1;
     electron[at + SOFT_2] = elastic.soft2 + 3 * electronSoft1;
     const inverse = 1 / (collision + radiative);
@@ -116,16 +126,8 @@ function buildTables(of: Material, cutMeV: number): TransportTables {
     electron[at + RANGE] = range;
     const cross = photonCrossSections(of, Math.min(Math.max(energy, 0.001), 100));
     photon[row * PHOTON_COLUMNS] = cross.photo + cross.compton + cross.pair;
-    photon[row * PHOTON_COLUMNS + 1] = cross.compton;
-    photon[row * PHOTON_COLUMNS + 2] = cross.pair;
-  }
-  for (let row = 0; row < ROW_COUNT; row++) {
-    let bound = 0;
-    for (let k = Math.max(0, row - BOUND_ROWS); k <= Math.min(ROW_COUNT - 1, row + 1); k++) {
-      const at = k * ELECTRON_COLUMNS;
-      bound = Math.max(bound, electron[at + RATE_ELASTIC] + electron[at + RATE_MOLLER] + electron[at + RATE_BREMS]);
-    }
-    electron[row * ELECTRON_COLUMNS + RATE_BOUND] = bound;
+    photon[row * PHOTON_COLUMNS + PHOTON_COMPTON] = cross.compton;
+    photon[row * PHOTON_COLUMNS + PHOTON_PAIR] = cross.pair;
   }
   return { cutMeV, electron, photon, screening, elasticQuantiles, bremsQuantiles };
 }
@@ -192,7 +194,9 @@ function bremsRow(
     return { rate: 0, softLoss: radiative };
   }
   let passed = 0;
+  // The first panel that reaches above the cut.
   let j = 0;
+  while (j < SHAPE_STEPS - 1 && low + (j + 1) * h <= logCut) j += 1;
   for (let q = 0; q < BREMS_QUANTILES; q++) {
     const target = (number * q) / (BREMS_QUANTILES - 1);
     for (;;) {

@@ -1,4 +1,4 @@
-import { planResponse, runShard } from '../../server/shielding/response.ts';
+import { shieldResponse } from '../../server/shielding/response.ts';
 import type { StackInput } from '../../server/shielding/types.ts';
 import { runBeam } from '../../server/transport/beam.ts';
 import type { BenchRow } from './run.ts';
@@ -45,7 +45,7 @@ export default async function transportBench(report: (row: BenchRow) => void): P
   ];
   for (const [name, stack] of stacks) {
     const start = process.hrtime.bigint();
-    for (const task of planResponse(stack, { effort: 'standard', targetMaterialId: 'Si', seed: 1 })) runShard(task);
+    shieldResponse(stack, { effort: 'standard', targetMaterialId: 'Si', seed: 1 });
     report({
       name: `transport::response:${name},standard,one-core`,
       value: Number(process.hrtime.bigint() - start) / 1e9,

@@ -123,6 +123,7 @@ export function toyResponse(toy: ToyResponse): ShieldResponse {
     sha256: contentHash({ response: toy.name ?? 'toy' }),
     engineVersion: 'toy-1',
     effort: 'standard',
+    referenceErrorRel: 0.02,
     targetMaterialId: toy.targetMaterialId ?? 'Si',
     description: 'Toy shield',
     electron: {

@@ -1,10 +1,10 @@
 import { describe, expect, it } from 'vitest';
 import { AppError } from '../../../server/errors.ts';
 import {
-  electronCollisionStopping,
   electronRadiativeStopping,
   material,
   photonCrossSections,
+  restrictedCollisionStopping,
 } from '../../../server/matter/index.ts';
 import { PROTON_EDGES_MEV } from '../../../server/numeric/spectrumGrid.ts';
 import { type BeamCase, runBeam as runTimedBeam } from '../../../server/transport/beam.ts';
@@ -38,7 +38,16 @@ const SIGMAS = 4;
 function onlyLayer(id: string, thickness: number, cutMeV: number) {
   return new Kernel(
     { spherical: false, target: 0, layers: [{ material: material(id), thickness, importance: 1, forcing: 1 }] },
-    { cutMeV, absorbMeV: 0.005, photons: true, survival: 1, photonSplit: 1, bins: 0 },
+    {
+      cutMeV,
+      absorbMeV: 0.005,
+      photons: true,
+      survival: 1,
+      radiativeForcing: 1,
+      stayShare: 0,
+      kerma: false,
+      bins: 0,
+    },
   );
 }
 
@@ -83,26 +92,31 @@ describe('histories', () => {
     });
   });
 
-  it('lose S t in a thin layer, and half of S per unit isotropic fluence', () => {
-    // Source: closed form; an isotropic fluence crosses a thin layer along t / cos θ, cosine-law weighted: mean 2 t.
-    // The cut lies above the energy, so that no secondary carries energy out.
-    const energy = 50;
+  it.each([1, 0.5])('lose S t / cos θ in a thin layer, cos θ = %s', (cosine) => {
+    // Source: closed form. What stays is the loss restricted to transfers below the cut (ICRU Report 37), and bremsstrahlung
+    // below it, whose k dσ/dk is flat there to a third: S_rad · cut / E of the whole, 0.7 %.
+    const energy = 10;
+    const cutMeV = 0.3;
     const silicon = material('Si');
-    const stopping = electronCollisionStopping(silicon, energy) + electronRadiativeStopping(silicon, energy);
-    const thickness = 1e-3;
-    const kernel = onlyLayer('Si', thickness, 60);
+    const stopping =
+      restrictedCollisionStopping(silicon, energy, cutMeV) +
+      (electronRadiativeStopping(silicon, energy) * cutMeV) / energy;
+    const thickness = 0.005;
+    const kernel = onlyLayer('Si', thickness, cutMeV);
     kernel.generator.start(1, 0, 0);
     let sum = 0;
-    const histories = 20_000;
+    let square = 0;
+    const histories = 40_000;
     for (let i = 0; i < histories; i++) {
-      // Directions below 0.05 are left out: 1/cos has no variance; their share of the mean is known, 0.05.
-      const cosine = Math.sqrt(0.05 ** 2 + (1 - 0.05 ** 2) * kernel.generator.next());
       kernel.history(ELECTRON, energy, cosine);
       sum += kernel.score[DIRECT];
+      square += kernel.score[DIRECT] ** 2;
     }
-    const perFluence = ((1 - 0.05 ** 2) * sum) / histories / (4 * thickness) / (1 - 0.05);
-    expect(perFluence / (0.5 * stopping)).toBeGreaterThan(0.985);
-    expect(perFluence / (0.5 * stopping)).toBeLessThan(1.015);
+    const mean = sum / histories;
+    const sigma = Math.sqrt((square / histories - mean ** 2) / histories);
+    const expected = (stopping * thickness) / cosine;
+    expect(Math.abs(mean - expected)).toBeLessThan(SIGMAS * sigma + 0.005 * expected);
+    expect(sigma / expected).toBeLessThan(0.01);
   });
 
   it('attenuate photons as exp(−μ t)', () => {
@@ -142,7 +156,9 @@ describe('histories', () => {
           absorbMeV: 0.02,
           photons: true,
           survival: biased ? 0.25 : 1,
-          photonSplit: biased ? 4 : 1,
+          radiativeForcing: biased ? 8 : 1,
+          stayShare: 0,
+          kerma: false,
           bins: 0,
         },
       );
