@@ -9,8 +9,10 @@ import { BorisStepper } from '../../../server/field/boris.ts';
 import { dipolePeriods } from '../../../server/field/dipolePeriods.ts';
 import {
   adiabaticity,
+  DriftShellTracer,
   EPSILON_LIMIT,
   type FieldModel,
+  type FieldModelId,
   fieldModel,
   traceParticle,
 } from '../../../server/field/index.ts';
@@ -175,6 +177,29 @@ describe('one drift round the dipole', () => {
       ).fate;
     expect(fate(lossDeg - 1)).toBe('lost');
     expect(fate(lossDeg + 1)).toBe('unfinished');
+  });
+});
+
+describe('one drift round the multipole field', () => {
+  // The labels claim that the particle comes back with its μ and J; in the full field nothing but the equation of motion
+  // keeps them, to the order of epsilon².
+  it.each<[FieldModelId, number, number]>([
+    ['uranus-q3', 6, 3],
+    ['neptune-o8', 7, 1],
+  ])('%s, L = %d: a proton of %d MeV, below the limit, comes back with its invariants', (id, lShell, energyMeV) => {
+    const model = fieldModel(id);
+    const shell = new DriftShellTracer(model).shell(lShell, (2 * model.dipoleMomentNt) / lShell ** 3, 12);
+    const [line] = shell.lines;
+    const [x, y, z] = line.minimumPoint;
+    const pitchAngleRad = Math.asin(Math.sqrt(line.bMinNt / shell.mirrorNt));
+    const motion = traceParticle(model, { species: 'proton', energyMeV, position: [x, y, z], pitchAngleRad });
+    expect(motion.method).toBe('boris');
+    expect(motion.fate).toBe('trapped');
+    expect(motion.muScatterRel).toBeLessThan(0.01);
+    expect(motion.jScatterRel).toBeLessThan(0.01);
+    const dipoleLike = dipolePeriods(model, 'proton', energyMeV, lShell, Math.PI / 4).driftPeriodS;
+    // The dipole of the same moment gives the period of a multipole shell to a few per cent.
+    expect(Math.abs(motion.driftPeriodS / dipoleLike - 1)).toBeLessThan(0.1);
   });
 });
 
