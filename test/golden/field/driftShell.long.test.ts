@@ -3,7 +3,14 @@
  * section III), worked out line by line, against the curve that is read off the planet's surface.
  */
 import { describe, expect, it } from 'vitest';
-import { bLossNtAt, DriftShellTracer, type FieldModelId, fieldModel, lossCurve } from '../../../server/field/index.ts';
+import {
+  bLossNtAt,
+  DriftShellTracer,
+  type FieldModelId,
+  fieldModel,
+  lossCurve,
+  traceParticle,
+} from '../../../server/field/index.ts';
 
 /** Relative: the curve's grid of 2 degrees. */
 const CURVE_REL = 0.01;
@@ -34,5 +41,30 @@ describe('B_loss of the surface against whole drift shells', () => {
     expect(low.length).toBeGreaterThan(1);
     // All of them within a few degrees of each other.
     expect(Math.max(...reach) - Math.min(...reach)).toBeLessThan(0.15);
+  });
+
+  it.each<[FieldModelId, number, number, 'lost' | 'trapped']>([
+    ['neptune-o8', 5, 17000, 'lost'],
+    ['neptune-o8', 5, 11500, 'trapped'],
+    ['neptune-o8', 7, 20000, 'trapped'],
+  ])('%s, L = %d, B_m = %d nT: an electron carried round by its guiding centre is %s', (id, lShell, mirrorNt, fate) => {
+    const model = fieldModel(id);
+    const tracer = new DriftShellTracer(model);
+    const { bMinNt, minimumPoint } = tracer.shell(lShell, mirrorNt, 12).lines[0];
+    const [x, y, z] = minimumPoint;
+    const motion = traceParticle(
+      model,
+      {
+        species: 'electron',
+        energyMeV: 3,
+        position: [x, y, z],
+        pitchAngleRad: Math.asin(Math.sqrt(bMinNt / mirrorNt)),
+      },
+      { method: 'guidingCentre', stepsPerTurn: 60, maxSteps: 3_000_000 },
+    );
+    expect(motion.fate).toBe(fate);
+    // The sliver lies at 294° of magnetic longitude; the electron reaches it from 360° downwards.
+    if (fate === 'lost') expect(Math.abs((motion.driftAngleRad * 180) / Math.PI + 60)).toBeLessThan(15);
+    expect(tracer.bLossNt(lShell) > mirrorNt).toBe(fate === 'trapped');
   });
 });
