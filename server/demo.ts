@@ -4,7 +4,7 @@ import { assessmentBody } from './api/schemas.ts';
 import type { Shop, TrajectoryBody } from './api/shop.ts';
 import { readReference } from './constants/reference.ts';
 import type { PartInput } from './margin/index.ts';
-import type { ShieldResponse, StackInput } from './shielding/types.ts';
+import type { ShieldInput, ShieldResponse, StackInput } from './shielding/types.ts';
 
 const DEMO = new URL('../fixtures/demo/', import.meta.url);
 
@@ -21,8 +21,10 @@ interface DemoStudy {
     readonly places: readonly {
       readonly placeId: string;
       readonly name: string;
-      readonly stack: string;
-      readonly areaM2: number;
+      /** Key of a stack, or a shield of its own. */
+      readonly stack?: string;
+      readonly shield?: ShieldInput;
+      readonly areaM2?: number;
     }[];
   }[];
   readonly parts: readonly PartInput[];
@@ -75,9 +77,9 @@ export async function seedDemo(shop: Shop): Promise<{ studyId: string; assessmen
     const optionIds = demo.options.map(
       ({ name: optionName, places }) =>
         shop.options.insert(studyId, optionName, {
-          places: places.map(({ stack, ...place }) => ({
+          places: places.map(({ stack, shield, ...place }) => ({
             ...place,
-            shield: { kind: 'stack' as const, stack: stacks.get(stack)!.stack },
+            shield: shield ?? { kind: 'stack', stack: stacks.get(stack!)!.stack },
           })),
         }).id,
     );

@@ -147,6 +147,11 @@ export const ERROR_CODES = {
     title: 'Stack refused',
     help: 'A stack has 1 to 20 layers, outside first, each of a known material and of 0.0001 to 500 mm, given in exactly one of thicknessMm, thicknessMil or arealDensityGPerCm2; at most 200 g/cm² in all. A shell needs innerRadiusMm.',
   },
+  SHIELD_INVALID: {
+    status: 422,
+    title: 'Shield refused',
+    help: 'Sectors are shares of 4π that sum to 1 within 1e-6, each behind a stack. A box has three inner sizes, six walls (+x, −x, +y, −y, +z, −z) and a part that lies inside; at most 3 boxes nest and each fits with its walls into the next. A spot shield covers a share above 0 and up to 1. Each entry of `errors` names the field.',
+  },
   BEAM_INVALID: {
     status: 422,
     title: 'Beam case refused',

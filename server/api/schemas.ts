@@ -38,6 +38,42 @@ export const stackSchema = z.object({
 
 export const stackBody = stackSchema.extend({ studyId: id, name });
 
+const vectorMm = z.tuple([z.number(), z.number(), z.number()]);
+const boxFields = {
+  innerSizeMm: vectorMm,
+  walls: z.array(z.array(layerSchema)),
+  positionMm: vectorMm.default([0, 0, 0]),
+};
+/** Boxes nest to the depth that is carried through. */
+const innermostBox = z.object(boxFields);
+const middleBox = z.object({ ...boxFields, inner: innermostBox.optional() });
+const boxSchema = z.object({ ...boxFields, inner: middleBox.optional() });
+
+const spotSchema = z.object({
+  layers: z.array(layerSchema),
+  coveredFraction: z.number().optional(),
+  areaM2: z.number().positive().optional(),
+});
+
+export const shieldSchema = z.discriminatedUnion('kind', [
+  z.object({ kind: z.literal('stack'), stack: stackSchema, spot: spotSchema.optional() }),
+  z.object({
+    kind: z.literal('sectors'),
+    sectors: z
+      .array(z.object({ name: name.optional(), fraction: z.number(), stack: stackSchema }))
+      .min(1)
+      .max(50),
+    spot: spotSchema.optional(),
+  }),
+  z.object({
+    kind: z.literal('box'),
+    box: boxSchema,
+    rays: z.number().optional(),
+    pathRule: z.enum(['slant', 'minimum']).optional(),
+    spot: spotSchema.optional(),
+  }),
+]);
+
 export const optionBody = z.object({
   studyId: id,
   name,
@@ -47,8 +83,10 @@ export const optionBody = z.object({
         placeId: z.string().trim().min(1).max(64),
         name,
         stackId: id.optional(),
-        shield: z.object({ kind: z.literal('stack'), stack: stackSchema }).optional(),
+        shield: shieldSchema.optional(),
         areaM2: z.number().positive().max(1e4).optional(),
+        innerBoxMm: vectorMm.optional(),
+        innerSphereRadiusMm: z.number().positive().max(1e4).optional(),
       }),
     )
     .min(1)
@@ -129,6 +167,7 @@ export const assessmentBody = z.object({
   verdictPercentile: z.number().min(50).max(99.9).optional(),
   requiredRdm: z.number().min(1).max(100).optional(),
   baselineOptionId: id.optional(),
+  sensitivity: z.boolean().optional(),
   otherSources: z.array(otherSourceSchema).max(50).default([]),
   sampling: z
     .object({

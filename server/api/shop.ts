@@ -8,7 +8,7 @@ import type { EnvironmentChoice } from '../fluence/index.ts';
 import { exposureOf, runAssessment, type StoredTrajectory, type Workshop } from '../jobs/assessment.ts';
 import type { Pool } from '../jobs/pool.ts';
 import { type JobHandler, Runner } from '../jobs/runner.ts';
-import type { AssessmentSnapshot } from '../jobs/snapshot.ts';
+import type { AssessmentSnapshot, SnapshotPlace } from '../jobs/snapshot.ts';
 import type { PartInput } from '../margin/index.ts';
 import type { StackInput } from '../shielding/types.ts';
 import type { TrajectorySummary } from '../trajectory/index.ts';
@@ -31,12 +31,7 @@ export interface TrajectoryBody {
 }
 
 export interface OptionBody {
-  readonly places: readonly {
-    readonly placeId: string;
-    readonly name: string;
-    readonly shield: { readonly kind: 'stack'; readonly stack: StackInput };
-    readonly areaM2?: number;
-  }[];
+  readonly places: readonly SnapshotPlace[];
 }
 
 export interface CaseBody {

@@ -1,8 +1,10 @@
 import type { z } from 'zod';
 import { AppError } from '../errors.ts';
 import { checkParts, formatPartsCsv, type PartInput, parsePartsCsv } from '../margin/index.ts';
-import { describeStack, massOverAreaKg, normaliseStack } from '../shielding/stack.ts';
-import type { StackInput } from '../shielding/types.ts';
+import { placeMassKg } from '../shielding/mass.ts';
+import { describeShield, plainStack } from '../shielding/shieldPlan.ts';
+import { describeStack, normaliseStack } from '../shielding/stack.ts';
+import type { ShieldInput, StackInput } from '../shielding/types.ts';
 import { MM_PER_MIL } from '../units.ts';
 import { documentRoutes, sendFile } from './documentRoutes.ts';
 import { defineRoute, type Route } from './routes.ts';
@@ -62,29 +64,37 @@ export function studyRoutes(shop: Shop): Route[] {
               { pointer: `#/places/${index}`, detail: 'exactly one of stackId and shield is needed' },
             ]);
           }
-          const stack =
+          const shield: ShieldInput =
             place.shield === undefined
-              ? found(shop.stacks.get(place.stackId!), 'stack', place.stackId!).body
-              : (place.shield.stack as StackInput);
-          normaliseStack(stack, `#/places/${index}/shield/stack`);
+              ? { kind: 'stack', stack: found(shop.stacks.get(place.stackId!), 'stack', place.stackId!).body }
+              : (place.shield as ShieldInput);
+          plainStack(shield, `#/places/${index}/shield`);
+          const enclosed = (['areaM2', 'innerBoxMm', 'innerSphereRadiusMm'] as const).filter(
+            (key) => place[key] !== undefined,
+          );
+          if (enclosed.length > 1) {
+            throw new AppError('REQUEST_INVALID', `#/places/${index}: at most one of ${enclosed.join(', ')}.`, [
+              { pointer: `#/places/${index}`, detail: 'at most one size for the mass', got: enclosed.length, limit: 1 },
+            ]);
+          }
+          const { placeId, areaM2, innerBoxMm, innerSphereRadiusMm } = place;
           return {
-            placeId: place.placeId,
+            placeId,
             name: place.name,
-            shield: { kind: 'stack' as const, stack },
-            ...(place.areaM2 === undefined ? {} : { areaM2: place.areaM2 }),
+            shield,
+            ...(areaM2 === undefined ? {} : { areaM2 }),
+            ...(innerBoxMm === undefined ? {} : { innerBoxMm }),
+            ...(innerSphereRadiusMm === undefined ? {} : { innerSphereRadiusMm }),
           };
         });
         return { name, studyId: inStudy(studyId), body: { places: stored } };
       },
       shown: (document) => {
-        const places = document.body.places.map((place) => {
-          const stack = normaliseStack(place.shield.stack);
-          return {
-            ...place,
-            shieldText: describeStack(stack),
-            massKg: place.areaM2 === undefined ? null : massOverAreaKg(stack, place.areaM2),
-          };
-        });
+        const places = document.body.places.map((place) => ({
+          ...place,
+          shieldText: describeShield(place.shield),
+          massKg: placeMassKg(place),
+        }));
         const massKg = places.every((place) => place.massKg !== null)
           ? places.reduce((sum, place) => sum + (place.massKg ?? 0), 0)
           : null;

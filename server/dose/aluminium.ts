@@ -35,6 +35,15 @@ export function aluminiumDoseDepth(geometry: DoseDepthTable['geometry'] = 'slab'
   return known;
 }
 
+/** The response of an aluminium slab or sphere with this key, if it ships. */
+export function aluminiumResponse(sha256: string): ShieldResponse | null {
+  for (const geometry of ['slab', 'sphere'] as const) {
+    const known = aluminiumDoseDepth(geometry).responses.find((response) => response.sha256 === sha256);
+    if (known !== undefined) return known;
+  }
+  return null;
+}
+
 function load(geometry: DoseDepthTable['geometry']): DoseDepthTable {
   const stored = readReferenceJson<StoredTable>('responses-aluminium', `${geometry}.json`);
   const { effort, engineVersion, targetMaterialId } = stored;

@@ -2,23 +2,23 @@ import type { Artefacts } from '../../db/artefacts.ts';
 import type { Blobs } from '../../db/blobs.ts';
 import type { Documents } from '../../db/documents.ts';
 import { contentHash } from '../canonical.ts';
-import { AppError } from '../errors.ts';
 import type { EnvironmentChoice } from '../fluence/index.ts';
-import type { AssessmentResult, ResultNotice } from '../margin/index.ts';
 import {
-  doneShare,
-  finishResponse,
-  planRound,
-  type ResponseOptions,
-  responseKey,
-  type ShardTally,
-} from '../shielding/response.ts';
-import { aluminiumEquivalentMm, describeStack, massOverAreaKg, normaliseStack } from '../shielding/stack.ts';
-import type { ShieldResponse, StackInput } from '../shielding/types.ts';
+  type AssessmentResult,
+  type ResultNotice,
+  scaleShield,
+  THICKER_FACTOR,
+  THINNER_FACTOR,
+} from '../margin/index.ts';
+import { aluminiumEquivalents, shieldKey } from '../shielding/composeShield.ts';
+import { placeMassKg } from '../shielding/mass.ts';
+import { describeShield } from '../shielding/shieldPlan.ts';
+import type { ShieldInput } from '../shielding/types.ts';
 import { ENGINE_VERSION } from '../version.ts';
 import { environmentFor } from './environment.ts';
 import type { Pool } from './pool.ts';
 import type { JobContext } from './runner.ts';
+import { responseOrReason, STANDARD_RESPONSE } from './shieldResponses.ts';
 import type { AssessmentSnapshot } from './snapshot.ts';
 import type { AssessOrder } from './worker.ts';
 
@@ -68,39 +68,6 @@ export async function exposureOf(
   return { key, fluencePath, summaryPath };
 }
 
-/** Response of a stack: shards spread over the pool, merged in their own order, so any number of workers gives the same. */
-export async function responseOf(
-  shop: Workshop,
-  stack: StackInput,
-  options: ResponseOptions,
-  signal: AbortSignal | undefined,
-  onProgress: (share: number) => void,
-): Promise<{ path: string; response: ShieldResponse }> {
-  const key = responseKey(stack, options);
-  const known = await shop.artefacts.get<ShieldResponse>(key);
-  if (known !== null) return { path: shop.artefacts.path(key)!, response: known };
-  const tallies: ShardTally[] = [];
-  for (;;) {
-    const tasks = planRound(stack, options, tallies);
-    if (tasks.length === 0) break;
-    const before = doneShare(options, tallies);
-    let done = 0;
-    const round = await Promise.all(
-      tasks.map(async (task) => {
-        const tally = await shop.pool.run({ kind: 'shard', task }, signal);
-        done += 1;
-        onProgress(before + ((1 - before) * 0.9 * done) / tasks.length);
-        return tally;
-      }),
-    );
-    tallies.push(...round);
-  }
-  const response = finishResponse(stack, options, tallies);
-  return { path: shop.artefacts.put(key, 'response', response), response };
-}
-
-export const STANDARD_RESPONSE: ResponseOptions = { effort: 'standard', targetMaterialId: 'Si', seed: 1 };
-
 /** The main job: exposures, responses, then the assessment itself; everything already known is taken from the store. */
 export async function runAssessment(
   shop: Workshop,
@@ -136,31 +103,37 @@ export async function runAssessment(
     }),
   );
 
-  const shields = snapshot.options.flatMap((option) => option.places.map((place) => place.shield.stack));
-  let finished = 0;
-  const paths = new Map<string, { path: string | null; notAssessed: string | null }>();
-  for (const stack of shields) {
-    const key = responseKey(stack, STANDARD_RESPONSE);
-    if (!paths.has(key)) {
-      const text = describeStack(normaliseStack(stack));
-      const report = (share: number) =>
-        context.progress(0.35 + (0.5 * (finished + share)) / shields.length, `Carrying particles through ${text}`);
-      report(0);
-      try {
-        const { path, response } = await responseOf(shop, stack, STANDARD_RESPONSE, context.signal, report);
-        for (const text of response.notices) {
-          if (!notices.some((notice) => notice.text === text))
-            notices.push({ code: 'response', severity: 'info', text });
-        }
-        paths.set(key, { path, notAssessed: null });
-      } catch (error) {
-        // A shield outside the validity of the transport leaves its rows empty, with the reason; the others are assessed.
-        if (!(error instanceof AppError && error.code === 'RESPONSE_UNSUPPORTED')) throw error;
-        paths.set(key, { path: null, notAssessed: error.message });
+  const shields = snapshot.options.flatMap((option) => option.places.map((place) => place.shield));
+  const wanted = shields.flatMap((shield) => [
+    { shield, text: describeShield(shield), needed: true },
+    ...(snapshot.sensitivity === false
+      ? []
+      : [THINNER_FACTOR, THICKER_FACTOR].map((factor) => ({
+          shield: scaleShield(shield, factor),
+          text: `${describeShield(shield)}, all layers × ${factor}`,
+          needed: false,
+        }))),
+  ]);
+  const responses = new Map<string, { path: string | null; notAssessed: string | null }>();
+  for (const [index, { shield, text, needed }] of wanted.entries()) {
+    const key = shieldKey(shield, STANDARD_RESPONSE);
+    if (responses.has(key)) continue;
+    const report = (share: number) =>
+      context.progress(0.35 + (0.5 * (index + share)) / wanted.length, `Carrying particles through ${text}`);
+    report(0);
+    const got = await responseOrReason(shop, shield, context.signal, report);
+    if (typeof got === 'string') {
+      responses.set(key, { path: null, notAssessed: got });
+      continue;
+    }
+    responses.set(key, { path: got.path, notAssessed: null });
+    for (const notice of needed ? got.response.notices : []) {
+      if (!notices.some((known) => known.text === notice)) {
+        notices.push({ code: 'response', severity: 'info', text: notice });
       }
     }
-    finished += 1;
   }
+  const pathOf = (shield: ShieldInput) => responses.get(shieldKey(shield, STANDARD_RESPONSE));
 
   context.progress(0.86, 'Drawing belts, phases and lots');
   const order: AssessOrder = {
@@ -180,17 +153,21 @@ export async function runAssessment(
       optionId: option.optionId,
       name: option.name,
       places: option.places.map((place) => {
-        const stack = normaliseStack(place.shield.stack);
-        const known = paths.get(responseKey(place.shield.stack, STANDARD_RESPONSE))!;
+        const { shield } = place;
+        const known = pathOf(shield)!;
+        const scaled = (factor: number) =>
+          snapshot.sensitivity === false ? null : (pathOf(scaleShield(shield, factor))?.path ?? null);
         return {
           placeId: place.placeId,
           name: place.name,
-          geometry: stack.geometry,
-          shieldText: describeStack(stack),
-          massKg: place.areaM2 === undefined ? null : massOverAreaKg(stack, place.areaM2),
+          geometry: shield.kind === 'stack' ? shield.stack.geometry : shield.kind,
+          shieldText: describeShield(shield),
+          massKg: placeMassKg(place),
           responsePath: known.path,
+          thinnerPath: scaled(THINNER_FACTOR),
+          thickerPath: scaled(THICKER_FACTOR),
           ...(known.notAssessed === null ? {} : { notAssessed: known.notAssessed }),
-          aluminiumEquivalent: [{ weight: 1, thicknessMm: aluminiumEquivalentMm(stack) }],
+          aluminiumEquivalent: aluminiumEquivalents(shield),
           ...(place.holdsAllParts === true ? { holdsAllParts: true } : {}),
         };
       }),

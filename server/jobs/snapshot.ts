@@ -1,6 +1,7 @@
 import type { OtherSourceInput } from '../dose/index.ts';
 import type { AssessedCase, AssessmentInput, PartInput } from '../margin/index.ts';
-import type { StackInput } from '../shielding/types.ts';
+import type { Enclosed } from '../shielding/mass.ts';
+import type { ShieldInput } from '../shielding/types.ts';
 import type { StoredTrajectory } from './assessment.ts';
 import type { EnvironmentRequest } from './environment.ts';
 
@@ -15,16 +16,19 @@ export interface AssessmentSnapshot {
   readonly sampling: { readonly draws: number; readonly seed: number };
   readonly environment: EnvironmentRequest;
   readonly baselineOptionId?: string;
+  /** False leaves out the doses at layers 10 % thinner and thicker. */
+  readonly sensitivity?: boolean;
 }
 
 export interface SnapshotOption {
   readonly optionId: string;
   readonly name: string;
-  readonly places: readonly {
-    readonly placeId: string;
-    readonly name: string;
-    readonly shield: { readonly kind: 'stack'; readonly stack: StackInput };
-    readonly areaM2?: number;
-    readonly holdsAllParts?: boolean;
-  }[];
+  readonly places: readonly SnapshotPlace[];
+}
+
+export interface SnapshotPlace extends Enclosed {
+  readonly placeId: string;
+  readonly name: string;
+  readonly shield: ShieldInput;
+  readonly holdsAllParts?: boolean;
 }

@@ -19,8 +19,9 @@ import {
 import { type AssessmentInput, type AssessmentResult, assess } from '../margin/index.ts';
 import { renderReport } from '../report/index.ts';
 import type { ReportInput } from '../report/types.ts';
-import { runShard, type ShardTally, type ShardTask } from '../shielding/response.ts';
-import type { ShieldResponse } from '../shielding/types.ts';
+import { composeShield } from '../shielding/composeShield.ts';
+import { type ResponseOptions, runShard, type ShardTally, type ShardTask } from '../shielding/response.ts';
+import type { ShieldInput, ShieldResponse } from '../shielding/types.ts';
 import { readTrajectory, type TrajectoryRequest, type TrajectorySummary } from '../trajectory/index.ts';
 import { type EvaluateFieldInput, evaluateField, type SamplePathInput, samplePath } from './pathSampling.ts';
 
@@ -36,6 +37,12 @@ export type WorkerTask =
       readonly outPath: string;
     }
   | { readonly kind: 'shard'; readonly task: ShardTask }
+  | {
+      readonly kind: 'composeShield';
+      readonly shield: ShieldInput;
+      readonly options: ResponseOptions;
+      readonly responsePaths: readonly string[];
+    }
   | { readonly kind: 'fieldMapShard'; readonly task: FieldMapTask }
   | { readonly kind: 'assess'; readonly order: AssessOrder }
   | ({ readonly kind: 'samplePath'; readonly filePath: string; readonly request: TrajectoryRequest } & SamplePathInput)
@@ -57,8 +64,14 @@ export interface AssessOrder {
     readonly fluencePath: string;
   })[];
   readonly options: readonly (Omit<AssessmentInput['options'][number], 'places'> & {
-    readonly places: readonly (Omit<AssessmentInput['options'][number]['places'][number], 'response'> & {
+    readonly places: readonly (Omit<
+      AssessmentInput['options'][number]['places'][number],
+      'response' | 'thinner10Pct' | 'thicker10Pct'
+    > & {
       readonly responsePath: string | null;
+      /** The same shield with every layer 10 % thinner and thicker; null where not asked for. */
+      readonly thinnerPath: string | null;
+      readonly thickerPath: string | null;
     })[];
   })[];
 }
@@ -71,11 +84,13 @@ export type WorkerAnswer<K extends WorkerTask['kind']> = K extends 'readTrajecto
       ? ShardTally
       : K extends 'fieldMapShard'
         ? FieldMapShard
-        : K extends 'assess'
-          ? AssessmentResult
-          : K extends 'report'
-            ? Uint8Array
-            : unknown;
+        : K extends 'composeShield'
+          ? ShieldResponse
+          : K extends 'assess'
+            ? AssessmentResult
+            : K extends 'report'
+              ? Uint8Array
+              : unknown;
 
 export default async function work(task: WorkerTask): Promise<unknown> {
   switch (task.kind) {
@@ -94,6 +109,8 @@ export default async function work(task: WorkerTask): Promise<unknown> {
       });
     case 'shard':
       return runShard(task.task);
+    case 'composeShield':
+      return composeShield(task.shield, task.options, task.responsePaths.map(readResponse));
     case 'fieldMapShard':
       return traceFieldMapShard(task.task);
     case 'assess':
@@ -127,15 +144,16 @@ function withTrajectory<T>(
   }
 }
 
+function readResponse(path: string): ShieldResponse {
+  return deserialize(readFileSync(path)) as ShieldResponse;
+}
+
 function fillOrder(order: AssessOrder): AssessmentInput {
   const responses = new Map<string, ShieldResponse>();
   const responseAt = (path: string | null): ShieldResponse | null => {
     if (path === null) return null;
-    let response = responses.get(path);
-    if (response === undefined) {
-      response = deserialize(readFileSync(path)) as ShieldResponse;
-      responses.set(path, response);
-    }
+    const response = responses.get(path) ?? readResponse(path);
+    responses.set(path, response);
     return response;
   };
   return {
@@ -146,8 +164,17 @@ function fillOrder(order: AssessOrder): AssessmentInput {
     })),
     options: order.options.map((option) => ({
       ...option,
-      places: option.places.map(({ responsePath, ...place }) => ({ ...place, response: responseAt(responsePath) })),
+      places: option.places.map(({ responsePath, thinnerPath, thickerPath, ...place }) => {
+        const thinner10Pct = responseAt(thinnerPath);
+        const thicker10Pct = responseAt(thickerPath);
+        return {
+          ...place,
+          response: responseAt(responsePath),
+          ...(thinner10Pct === null ? {} : { thinner10Pct }),
+          ...(thicker10Pct === null ? {} : { thicker10Pct }),
+        };
+      }),
     })),
-    doseDepthTables: [aluminiumDoseDepth()],
+    doseDepthTables: [aluminiumDoseDepth('slab'), aluminiumDoseDepth('sphere')],
   };
 }

@@ -12,16 +12,19 @@ export const THICKER_FACTOR = 1.1;
  */
 export function scaleShield(shield: ShieldInput, factor: number): ShieldInput {
   if (!(Number.isFinite(factor) && factor > 0)) throw new TypeError(`factor must be above 0, got ${factor}`);
+  const spot =
+    shield.spot === undefined ? {} : { spot: { ...shield.spot, layers: scaleLayers(shield.spot.layers, factor) } };
   switch (shield.kind) {
     case 'stack':
-      return { ...shield, stack: scaleStack(shield.stack, factor) };
+      return { ...shield, ...spot, stack: scaleStack(shield.stack, factor) };
     case 'sectors':
       return {
         ...shield,
+        ...spot,
         sectors: shield.sectors.map((sector) => ({ ...sector, stack: scaleStack(sector.stack, factor) })),
       };
     case 'box':
-      return { ...shield, box: scaleBox(shield.box, factor) };
+      return { ...shield, ...spot, box: scaleBox(shield.box, factor) };
   }
 }
 
@@ -39,17 +42,9 @@ function scaleLayers(layers: readonly LayerInput[], factor: number): LayerInput[
 }
 
 function scaleBox(box: BoxInput, factor: number): BoxInput {
-  const [a, b, c, d, e, f] = box.walls;
   return {
     ...box,
-    walls: [
-      scaleLayers(a, factor),
-      scaleLayers(b, factor),
-      scaleLayers(c, factor),
-      scaleLayers(d, factor),
-      scaleLayers(e, factor),
-      scaleLayers(f, factor),
-    ],
+    walls: box.walls.map((layers) => scaleLayers(layers, factor)),
     ...(box.inner === undefined ? {} : { inner: scaleBox(box.inner, factor) }),
   };
 }

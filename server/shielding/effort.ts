@@ -14,7 +14,7 @@ export interface EffortLimits {
 }
 
 export const EFFORT: Readonly<Record<EffortClass, EffortLimits>> = {
-  standard: { errorRel: 0.02, pilot: 300, maxCost: 1.6e8 },
+  standard: { errorRel: 0.02, pilot: 300, maxCost: 3.2e8 },
   fine: { errorRel: 0.005, pilot: 1000, maxCost: 2.5e9 },
 };
 
@@ -106,4 +106,9 @@ const MIN_ROUND_SHARE = 0.01;
 /** A bin that saw nothing rare yet has at least half the variance of its neighbours. */
 function neighbourly(variance: Float64Array): Float64Array {
   return variance.map((own, b) => Math.max(own, 0.5 * (variance[b - 1] ?? 0), 0.5 * (variance[b + 1] ?? 0)));
+}
+
+/** Dose of every reference spectrum behind a response per bin, in its unit. */
+export function referenceDoses(perBin: Float64Array): number[] {
+  return REFERENCE.spectra.map(({ weights }) => perBin.reduce((sum, value, bin) => sum + weights[bin] * value, 0));
 }

@@ -6,7 +6,7 @@ import { protonResponse } from '../transport/protons.ts';
 import { GY_PER_MEV_PER_G } from '../units.ts';
 import { ENGINE_VERSION } from '../version.ts';
 import { EFFORT, histories, type Progress, REFERENCE_VERSION, worstReferenceError } from './effort.ts';
-import { aimAtCentre, aimSpread, sphereRadiusCm, TARGET_MM, transportOf } from './responsePlan.ts';
+import { aimAtCentre, aimedShare, aimSpread, sphereRadiusCm, TARGET_MM, transportOf } from './responsePlan.ts';
 import { describeStack, normaliseStack, type Stack } from './stack.ts';
 import type { EffortClass, ShieldResponse, StackInput, TargetMaterialId } from './types.ts';
 
@@ -151,13 +151,14 @@ export function runShard(task: ShardTask): ShardTally {
     const { geometry, options } = transportOf(stack, task.targetMaterialId, low * Math.exp(ratio));
     const kernel = new Kernel(geometry, options);
     const { generator, score } = kernel;
+    const share = aimedShare(stack, low * Math.exp(ratio));
     generator.start(task.seed, bin, stream);
     const at = index * TALLY_COLUMNS;
     for (let i = 0; i < count; i++) {
       const energy = low * Math.exp(ratio * generator.next());
       // Isotropic fluence: crossings of the outer face follow the cosine law.
       if (geometry.spherical) {
-        aimAtCentre(epsilon, generator.next(), generator.next(), aim);
+        aimAtCentre(epsilon, share, generator.next(), generator.next(), aim);
         kernel.history(ELECTRON, energy, aim[0], aim[1]);
       } else kernel.history(ELECTRON, energy, Math.sqrt(generator.next()));
       const dose = score[DIRECT];

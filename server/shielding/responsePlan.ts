@@ -66,19 +66,25 @@ export function aimSpread(stack: Stack): number {
 }
 
 /**
- * Draws the direction in which a particle enters a sphere: cosine law, four fifths of the draws aimed at the centre with a
+ * Draws the direction in which a particle enters a sphere: cosine law, a share of the draws aimed at the centre with a
  * density ∝ 1/(sin² + ε), ε the share of the sphere's cross-section that the ball takes up.
  *
  * @param out - shape (2,): cosine to the inward normal, and weight; overwritten
  */
-export function aimAtCentre(epsilon: number, u: number, v: number, out: Float64Array): void {
+export function aimAtCentre(epsilon: number, share: number, u: number, v: number, out: Float64Array): void {
   const span = Math.log1p(1 / epsilon);
-  const sine2 = u < AIMED_SHARE ? epsilon * Math.expm1(span * v) : v;
-  const density = 1 - AIMED_SHARE + AIMED_SHARE / (span * (sine2 + epsilon));
+  const sine2 = u < share ? epsilon * Math.expm1(span * v) : v;
+  const density = 1 - share + share / (span * (sine2 + epsilon));
   out[0] = Math.sqrt(Math.max(1e-12, 1 - sine2));
   out[1] = 1 / density;
 }
-const AIMED_SHARE = 0.8;
+
+/** Share of the draws that are aimed: little is gained by it where only photons come through. */
+export function aimedShare(stack: Stack, energyMeV: number): number {
+  const range = electronCsdaRange(stack.layers[0].material, energyMeV);
+  return range < stack.arealDensityGPerCm2 ? AIMED_SHARES.stopped : AIMED_SHARES.through;
+}
+const AIMED_SHARES = { stopped: 0.2, through: 0.8 };
 
 /**
  * A solid sphere about a ball of target. The source is aimed at the centre; where electrons also lose their direction on
@@ -98,9 +104,14 @@ function sphereTransport(
   const rangeRatio = electronCsdaRange(layers[0].material, energyMeV) / total;
   const step = rangeRatio < 4 ? 4 : rangeRatio < 20 ? 2 : 1;
   const kerma = kermaHolds(stack, energyMeV);
-  const importanceAt = (radius: number) => step ** radii.filter((mark) => mark > radius).length;
+  const within = (radius: number) => radii.filter((mark) => mark > radius).length;
+  const importances = (radius: number) => ({
+    importance: step ** within(radius),
+    // Photons that count by expectation do so with 1/r² at every scattering: the nearer ones must be more, and weigh less.
+    ...(kerma ? { photonImportance: 2 ** within(radius) } : {}),
+  });
   const transport: TransportLayer[] = [
-    { material: material(target), thickness: ball, importance: importanceAt(0), forcing: kerma ? 1 : TARGET_FORCING },
+    { material: material(target), thickness: ball, ...importances(0), forcing: kerma ? 1 : TARGET_FORCING },
   ];
   let bottom = ball;
   let depth = 0;
@@ -112,7 +123,7 @@ function sphereTransport(
       transport.push({
         material: layer.material,
         thickness: to - from,
-        importance: importanceAt(middle),
+        ...importances(middle),
         forcing: middle < zone ? ZONE_FORCING : 1,
       });
     }
@@ -140,10 +151,15 @@ function shellTransport(
   const rangeRatio = electronCsdaRange(layers[0].material, energyMeV) / total;
   const marks = rangeRatio < SPLIT_BELOW_RANGE ? SPLIT_DEPTHS.map((share) => (1 - share) * total) : [];
   const kerma = kermaHolds(stack, energyMeV);
-  const importanceAt = (depth: number) => 2 ** marks.filter((mark) => mark > depth).length;
+  // Photons that count by expectation need no help on their way.
+  const forPhotons = kerma ? { photonImportance: 1 } : {};
+  const importances = (depth: number) => ({
+    importance: 2 ** marks.filter((mark) => mark > depth).length,
+    ...forPhotons,
+  });
   const transport: TransportLayer[] = [
-    { material: material(target), thickness: ball, importance: importanceAt(0), forcing: kerma ? 1 : TARGET_FORCING },
-    { material: null, thickness: inner - ball, importance: importanceAt(0), forcing: 1 },
+    { material: material(target), thickness: ball, ...importances(0), forcing: kerma ? 1 : TARGET_FORCING },
+    { material: null, thickness: inner - ball, ...importances(0), forcing: 1 },
   ];
   let bottom = 0;
   for (const layer of [...layers].reverse()) {
@@ -153,7 +169,7 @@ function shellTransport(
       transport.push({
         material: layer.material,
         thickness: (to - from) / layer.material.densityGPerCm3,
-        importance: importanceAt(middle),
+        ...importances(middle),
         forcing: !kerma && middle < ZONE_G_PER_CM2 ? ZONE_FORCING : 1,
       });
     }
@@ -182,6 +198,7 @@ function slabTransport(
   const marks = rangeRatio < SPLIT_BELOW_RANGE ? SPLIT_DEPTHS.map((share) => share * total) : [];
   const kerma = kermaHolds(stack, energyMeV);
   const zone = kerma ? total : Math.max(0, total - ZONE_G_PER_CM2);
+  const forPhotons = kerma ? { photonImportance: 1 } : {};
   const transport: TransportLayer[] = [];
   let top = 0;
   for (const layer of layers) {
@@ -192,21 +209,22 @@ function slabTransport(
         material: layer.material,
         thickness: to - from,
         importance: 2 ** marks.filter((mark) => mark < middle).length,
+        ...forPhotons,
         forcing: middle > zone ? ZONE_FORCING : 1,
       });
     }
     top = bottom;
   }
-  const importance = 2 ** marks.length;
+  const innermost = { importance: 2 ** marks.length, ...forPhotons };
   const of = material(target);
   const targetIndex = transport.length;
   const thickness = 0.1 * TARGET_MM * of.densityGPerCm3;
-  transport.push({ material: of, thickness, importance, forcing: kerma ? 1 : TARGET_FORCING });
+  transport.push({ material: of, thickness, ...innermost, forcing: kerma ? 1 : TARGET_FORCING });
   if (backing === 'same') {
     const last = layers[layers.length - 1].material;
     const forcing = kerma ? 1 : ZONE_FORCING;
-    transport.push({ material: last, thickness: ZONE_G_PER_CM2, importance, forcing });
-    transport.push({ material: last, thickness: BACKING_G_PER_CM2 - ZONE_G_PER_CM2, importance, forcing: 1 });
+    transport.push({ material: last, thickness: ZONE_G_PER_CM2, ...innermost, forcing });
+    transport.push({ material: last, thickness: BACKING_G_PER_CM2 - ZONE_G_PER_CM2, ...innermost, forcing: 1 });
   }
   return {
     geometry: { spherical: false, layers: transport, target: targetIndex },

@@ -17,21 +17,48 @@ export interface StackInput {
   readonly layers: readonly LayerInput[];
 }
 
+/** Layers right over the part, inside whatever stands round it, outside first. */
+export interface SpotShield {
+  readonly layers: readonly LayerInput[];
+  /** Share of all directions that it covers, default 1: independent of what lies outside it. */
+  readonly coveredFraction?: number;
+  /** For its mass alone. */
+  readonly areaM2?: number;
+}
+
+export interface Sector {
+  readonly name?: string;
+  /** Share of 4π; all shares sum to 1. */
+  readonly fraction: number;
+  readonly stack: StackInput;
+}
+
+/** Whether a ray through a wall counts with its slant path (solid sphere) or with the wall's own thickness (hollow shell). */
+export type PathRule = 'slant' | 'minimum';
+
 /**
  * A shield is one stack; or sectors: solid-angle fractions that sum to 1, each behind its stack;
- * or a box of six walls (+x, −x, +y, −y, +z, −z) round a point inside; or an outer shield with a spot shield over the
- * part. Boxes nest through `inner`.
+ * or a box of six walls (+x, −x, +y, −y, +z, −z) round a point inside. Boxes nest through `inner`. A spot shield may lie
+ * over the part in each.
  */
 export type ShieldInput =
-  | { readonly kind: 'stack'; readonly stack: StackInput }
-  | { readonly kind: 'sectors'; readonly sectors: readonly { readonly fraction: number; readonly stack: StackInput }[] }
-  | { readonly kind: 'box'; readonly box: BoxInput; readonly rays?: number };
+  | { readonly kind: 'stack'; readonly stack: StackInput; readonly spot?: SpotShield }
+  | { readonly kind: 'sectors'; readonly sectors: readonly Sector[]; readonly spot?: SpotShield }
+  | {
+      readonly kind: 'box';
+      readonly box: BoxInput;
+      /** Rays to begin with; doubled until the dose moves by less than 1 %. */
+      readonly rays?: number;
+      /** Default `slant`. */
+      readonly pathRule?: PathRule;
+      readonly spot?: SpotShield;
+    };
 
 export interface BoxInput {
   /** Inner size along x, y, z, mm. */
   readonly innerSizeMm: readonly [number, number, number];
-  /** Layers of the walls +x, −x, +y, −y, +z, −z, outside first. */
-  readonly walls: readonly [LayerInput[], LayerInput[], LayerInput[], LayerInput[], LayerInput[], LayerInput[]];
+  /** Six walls: layers of +x, −x, +y, −y, +z, −z, outside first; a wall without layers is open. */
+  readonly walls: readonly (readonly LayerInput[])[];
   /** Where the part (or the centre of the inner box) sits, mm from the centre of the inner volume. */
   readonly positionMm: readonly [number, number, number];
   readonly inner?: BoxInput;

@@ -8,6 +8,8 @@ export interface TransportLayer {
   readonly thickness: number;
   /** Relative importance, a power of two: particles entering a more important layer are split, leaving it rouletted. */
   readonly importance: number;
+  /** The same for photons; absent: as for electrons. */
+  readonly photonImportance?: number;
   /** Photons collide this many times as often here, each collision weighing as much less; 1 is analog. */
   readonly forcing: number;
 }

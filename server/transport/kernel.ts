@@ -83,6 +83,7 @@ export class Kernel {
   private depth = 0;
   private readonly layerCount: number;
   private readonly importance: Float64Array;
+  private readonly photonImportance: Float64Array;
   private readonly binScale: number;
   /** Layer that is the cavity of a hollow shell, −1 for none. */
   private readonly cavity: number;
@@ -106,6 +107,7 @@ export class Kernel {
       geometry.spherical ? (material?.densityGPerCm3 ?? 0) : 1,
     );
     this.importance = Float64Array.from(layers, (layer) => layer.importance);
+    this.photonImportance = Float64Array.from(layers, (layer) => layer.photonImportance ?? layer.importance);
     this.forcing = Float64Array.from(layers, (layer) => layer.forcing);
     this.maxStep = Float64Array.from(layers, (layer, i) =>
       i === geometry.target ? TARGET_STEP_SHARE * layer.thickness * this.density[i] : Number.POSITIVE_INFINITY,
@@ -279,8 +281,8 @@ export class Kernel {
       // One-way current: slabs count what comes from outside only.
       if (this.spherical || !inward) this.score[CROSSING] += weight;
     }
-    // Photons that count by expectation need no help on their way.
-    const ratio = kind === PHOTON && this.kerma !== null ? 1 : this.importance[next] / this.importance[layer];
+    const importance = kind === PHOTON ? this.photonImportance : this.importance;
+    const ratio = importance[next] / importance[layer];
     if (ratio < 1) {
       if (this.generator.next() >= ratio) return -1;
       this.crossedWeight = weight / ratio;

@@ -7,6 +7,11 @@ import { azimuthCosine, betaOf, comptonRatio, dipoleCosine, exponential, sauterC
 /** Share of the electrons set free by photons that are followed where the dose of photons counts by expectation. */
 const FOLLOWED_SHARE = 0.25;
 
+/** What a photon on the stack is in the middle of. */
+const NEW_FLIGHT = 0;
+const UNTRACKED = 1;
+const TRACKED = 2;
+
 /** Follows a photon, taken from the stack, until it is gone. The electrons it sets free go on the stack. */
 export function followPhoton(kernel: Kernel, slot: number): void {
   const { stackReal, stackInt, bits, generator, spherical, kerma } = kernel;
@@ -16,8 +21,10 @@ export function followPhoton(kernel: Kernel, slot: number): void {
   let weight = stackReal[4 * slot + 3];
   let layer = stackInt[4 * slot + 1];
   let optical = exponential(generator.next());
-  kerma?.flight(layer, x, w, energy, weight);
-  let tracked = kerma?.near(x) ?? false;
+  // Copies made at a bound go on with a flight that is counted already.
+  const state = stackInt[4 * slot + 3];
+  if (state === NEW_FLIGHT) kerma?.flight(layer, x, w, energy, weight);
+  let tracked = state === NEW_FLIGHT ? (kerma?.near(x) ?? false) : state === TRACKED;
   kernel.flights += 1;
   while (layer >= 0) {
     const tables = kernel.tables[layer];
@@ -48,7 +55,7 @@ export function followPhoton(kernel: Kernel, slot: number): void {
         kerma.tracked(energy, weight, far * kernel.density[layer]);
       }
       optical -= far * rate;
-      layer = kernel.cross(PHOTON, layer, x, w, far, energy, weight, 1, 0);
+      layer = kernel.cross(PHOTON, layer, x, w, far, energy, weight, 1, tracked ? TRACKED : UNTRACKED);
       x = kernel.crossedX;
       w = kernel.crossedW;
       weight = kernel.crossedWeight;

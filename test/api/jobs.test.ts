@@ -83,25 +83,38 @@ describe('jobs', () => {
     expect(text).toContain("'=SUM(1)");
   });
 
-  it('leaves a shield outside the validity unassessed, with the reason', async () => {
+  it('leaves a shield outside the validity unassessed, with the reason, and assesses a box of aluminium beside it', async () => {
     const asked = body as { studyId: string };
-    const shell = await request(service.app)
-      .post('/api/stacks')
+    const wall = (i: number, materialId: string) => [{ materialId, thicknessMm: 1 + 0.1 * i }];
+    const walls = (materialId: string) => Array.from({ length: 6 }, (_, i) => wall(i, materialId));
+    const box = { innerSizeMm: [200, 200, 200], positionMm: [10, 0, 0] };
+    const inner = { innerSizeMm: [40, 50, 60], positionMm: [0, 5, 0], walls: walls('Cu') };
+    const place = (placeId: string, shield: object) => ({ placeId, name: placeId, shield });
+    const option = await request(service.app)
+      .post('/api/options')
       .send({
         studyId: asked.studyId,
-        name: 'Shell',
-        geometry: 'shell',
-        innerRadiusMm: 50,
-        layers: [{ materialId: 'Al', thicknessMm: 1 }],
+        name: 'Boxes',
+        places: [
+          place('everywhere-different', { kind: 'box', box: { ...box, walls: walls('Ta'), inner } }),
+          place('aluminium', { kind: 'box', box: { ...box, walls: Array.from({ length: 6 }, () => wall(20, 'Al')) } }),
+        ],
       });
+    expect(option.status).toBe(201);
+    expect(option.body.places[1].massKg).toBeGreaterThan(1.9);
+    const { stackIds: _stacks, ...rest } = body as { stackIds: string[] };
     const made = await request(service.app)
       .post('/api/assessments')
-      .send({ ...body, stackIds: [shell.body.id] });
+      .send({ ...rest, optionIds: [option.body.id] });
     await until(`/api/jobs/${made.body.jobId}`, ended);
     const { result } = (await request(service.app).get(`/api/assessments/${made.body.id}`)).body;
-    expect(result.shieldDose[0].doseKradSi).toBeNull();
-    expect(result.shieldDose[0].notAssessed).toMatch(/shell/);
-    expect(result.margins[0].verdict).toBe('notAssessed');
+    const row = (placeId: string) => result.shieldDose.find((one: { placeId: string }) => one.placeId === placeId);
+    expect(row('everywhere-different').doseKradSi).toBeNull();
+    expect(row('everywhere-different').notAssessed).toMatch(/the limit is 60/);
+    expect(row('aluminium').doseKradSi.total).toBeGreaterThan(0);
+    const { places } = result.options[0];
+    expect(places[1].geometry).toBe('box');
+    expect(places[1].response.description).toMatch(/rays of equal solid angle/);
   });
 
   it('keeps an assessment unchanged when its stack is deleted', async () => {

@@ -1,26 +1,27 @@
 /**
- * Makes db/reference/responses-aluminium/{slab,sphere}.json: responses of aluminium at 32 depths. Run with
+ * Makes db/reference/responses-aluminium/{slab,sphere}.json: responses of aluminium at 34 depths. Run with
  * `npx tsx test/make/aluminiumResponses.ts slab` and `... sphere`; minutes of one core each.
  */
 import { writeFileSync } from 'node:fs';
+import { STANDARD_RESPONSE } from '../../server/jobs/shieldResponses.ts';
 import { shieldResponse } from '../../server/shielding/response.ts';
+import { nodeThicknessMm } from '../../server/shielding/shieldPlan.ts';
 import type { StackInput } from '../../server/shielding/types.ts';
 import { ENGINE_VERSION } from '../../server/version.ts';
 
-const DEPTHS = 32;
-const FIRST_MM = 0.01;
-const LAST_MM = 50;
+/** The depths that slant paths through aluminium are interpolated from: powers of the node ratio, 0.0089 to 51 mm. */
+const POWERS = [-18, 15] as const;
 const DIGITS = 4;
-const OPTIONS = { effort: 'standard', targetMaterialId: 'Si', seed: 2026 } as const;
+const OPTIONS = STANDARD_RESPONSE;
 
 const geometry = process.argv[2];
 if (geometry !== 'slab' && geometry !== 'sphere') throw new Error('give slab or sphere');
 
 const rounded = (values: Float64Array) => Array.from(values, (value) => Number(value.toPrecision(DIGITS)));
 
-const rows = Array.from({ length: DEPTHS }, (_, i) => {
-  const depthMm = Number((FIRST_MM * (LAST_MM / FIRST_MM) ** (i / (DEPTHS - 1))).toPrecision(DIGITS));
-  const stack: StackInput = { geometry, backing: 'none', layers: [{ materialId: 'Al', thicknessMm: depthMm }] };
+const rows = Array.from({ length: POWERS[1] - POWERS[0] + 1 }, (_, i) => {
+  const depthMm = nodeThicknessMm(POWERS[0] + i);
+  const stack: StackInput = { geometry, layers: [{ materialId: 'Al', thicknessMm: depthMm }] };
   const started = process.cpuUsage().user;
   const response = shieldResponse(stack, OPTIONS);
   const { sha256, description, electron, proton, notices, referenceErrorRel } = response;

@@ -112,7 +112,7 @@ describe('response of a shield', () => {
     const n = 1000;
     for (let i = 0; i < n; i++) {
       for (let j = 0; j < n; j++) {
-        aimAtCentre(0.01, (i + 0.5) / n, (j + 0.5) / n, out);
+        aimAtCentre(0.01, 0.8, (i + 0.5) / n, (j + 0.5) / n, out);
         weight += out[1] / n ** 2;
         sine2 += (out[1] * (1 - out[0] ** 2)) / n ** 2;
         cosine += (out[1] * out[0]) / n ** 2;
