@@ -192,6 +192,7 @@ export function startAssessment(shop: Shop, request: AssessmentRequest): { id: s
     sampling: request.sampling,
     environment: request.environment as AssessmentSnapshot['environment'],
     ...(request.baselineOptionId === undefined ? {} : { baselineOptionId: request.baselineOptionId }),
+    ...(request.sensitivity === undefined ? {} : { sensitivity: request.sensitivity }),
   };
   return shop.store.transaction(() => {
     const document = shop.assessments.insert(study.id, request.name, { jobId: '', snapshot });
