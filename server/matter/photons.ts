@@ -61,7 +61,7 @@ export function photonAttenuation(of: Material, energyMeV: number): number {
  * what those radiate. Photoelectrons keep the whole energy (no fluorescence escapes), Compton electrons their mean share
  * (Klein & Nishina 1929), pairs all but their rest energy. Valid 1 keV to 100 MeV.
  *
- * @source definition: ICRU Report 85 (2011); within 2 % of NIST XAAMDI in silicon from 20 keV to 20 MeV
+ * @source definition: ICRU Report 85 (2011); within 2 % of NIST XAAMDI in silicon from 30 keV to 5 MeV, 3 % at 10, 5 % at 20 MeV
  */
 export function photonEnergyAbsorption(of: Material, energyMeV: number): number {
   const { photo, compton, pair } = photonCrossSections(of, energyMeV);
