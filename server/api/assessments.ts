@@ -193,6 +193,9 @@ export function startAssessment(shop: Shop, request: AssessmentRequest): { id: s
     environment: request.environment as AssessmentSnapshot['environment'],
     ...(request.baselineOptionId === undefined ? {} : { baselineOptionId: request.baselineOptionId }),
     ...(request.sensitivity === undefined ? {} : { sensitivity: request.sensitivity }),
+    ...(request.otherTargetMaterialIds === undefined
+      ? {}
+      : { otherTargetMaterialIds: [...new Set(request.otherTargetMaterialIds)] }),
   };
   return shop.store.transaction(() => {
     const document = shop.assessments.insert(study.id, request.name, { jobId: '', snapshot });

@@ -168,6 +168,10 @@ export const assessmentBody = z.object({
   requiredRdm: z.number().min(1).max(100).optional(),
   baselineOptionId: id.optional(),
   sensitivity: z.boolean().optional(),
+  otherTargetMaterialIds: z
+    .array(z.enum(['SiO2', 'GaAs']))
+    .max(2)
+    .optional(),
   otherSources: z.array(otherSourceSchema).max(50).default([]),
   sampling: z
     .object({

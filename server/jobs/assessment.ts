@@ -104,24 +104,32 @@ export async function runAssessment(
   );
 
   const shields = snapshot.options.flatMap((option) => option.places.map((place) => place.shield));
+  const otherTargets = snapshot.otherTargetMaterialIds ?? [];
   const wanted = shields.flatMap((shield) => [
-    { shield, text: describeShield(shield), needed: true },
+    { shield, text: describeShield(shield), needed: true, targetMaterialId: STANDARD_RESPONSE.targetMaterialId },
+    ...otherTargets.map((targetMaterialId) => ({
+      shield,
+      text: `${describeShield(shield)}, dose in ${targetMaterialId}`,
+      needed: false,
+      targetMaterialId,
+    })),
     ...(snapshot.sensitivity === false
       ? []
       : [THINNER_FACTOR, THICKER_FACTOR].map((factor) => ({
           shield: scaleShield(shield, factor),
           text: `${describeShield(shield)}, all layers × ${factor}`,
           needed: false,
+          targetMaterialId: STANDARD_RESPONSE.targetMaterialId,
         }))),
   ]);
   const responses = new Map<string, { path: string | null; notAssessed: string | null }>();
-  for (const [index, { shield, text, needed }] of wanted.entries()) {
-    const key = shieldKey(shield, STANDARD_RESPONSE);
+  for (const [index, { shield, text, needed, targetMaterialId }] of wanted.entries()) {
+    const key = shieldKey(shield, { ...STANDARD_RESPONSE, targetMaterialId });
     if (responses.has(key)) continue;
     const report = (share: number) =>
       context.progress(0.35 + (0.5 * (index + share)) / wanted.length, `Carrying particles through ${text}`);
     report(0);
-    const got = await responseOrReason(shop, shield, context.signal, report);
+    const got = await responseOrReason(shop, shield, targetMaterialId, context.signal, report);
     if (typeof got === 'string') {
       responses.set(key, { path: null, notAssessed: got });
       continue;
@@ -133,7 +141,8 @@ export async function runAssessment(
       }
     }
   }
-  const pathOf = (shield: ShieldInput) => responses.get(shieldKey(shield, STANDARD_RESPONSE));
+  const pathOf = (shield: ShieldInput, targetMaterialId = STANDARD_RESPONSE.targetMaterialId) =>
+    responses.get(shieldKey(shield, { ...STANDARD_RESPONSE, targetMaterialId }));
 
   context.progress(0.86, 'Drawing belts, phases and lots');
   const order: AssessOrder = {
@@ -166,6 +175,7 @@ export async function runAssessment(
           responsePath: known.path,
           thinnerPath: scaled(THINNER_FACTOR),
           thickerPath: scaled(THICKER_FACTOR),
+          otherTargetPaths: otherTargets.flatMap((target) => pathOf(shield, target)?.path ?? []),
           ...(known.notAssessed === null ? {} : { notAssessed: known.notAssessed }),
           aluminiumEquivalent: aluminiumEquivalents(shield),
           ...(place.holdsAllParts === true ? { holdsAllParts: true } : {}),

@@ -9,7 +9,7 @@ import {
   responseKey,
   type ShardTally,
 } from '../shielding/response.ts';
-import type { ShieldInput, ShieldResponse, StackInput } from '../shielding/types.ts';
+import type { ShieldInput, ShieldResponse, StackInput, TargetMaterialId } from '../shielding/types.ts';
 import type { Workshop } from './assessment.ts';
 
 export const STANDARD_RESPONSE: ResponseOptions = { effort: 'standard', targetMaterialId: 'Si', seed: 1 };
@@ -83,11 +83,12 @@ function keep(shop: Workshop, key: string, response: ShieldResponse): KeptRespon
 export async function responseOrReason(
   shop: Workshop,
   shield: ShieldInput,
+  targetMaterialId: TargetMaterialId,
   signal: AbortSignal | undefined,
   onProgress: (share: number) => void,
 ): Promise<KeptResponse | string> {
   try {
-    return await shieldResponseOf(shop, shield, STANDARD_RESPONSE, signal, onProgress);
+    return await shieldResponseOf(shop, shield, { ...STANDARD_RESPONSE, targetMaterialId }, signal, onProgress);
   } catch (error) {
     if (!(error instanceof AppError && error.code === 'RESPONSE_UNSUPPORTED')) throw error;
     return error.message;

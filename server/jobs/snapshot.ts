@@ -1,7 +1,7 @@
 import type { OtherSourceInput } from '../dose/index.ts';
 import type { AssessedCase, AssessmentInput, PartInput } from '../margin/index.ts';
 import type { Enclosed } from '../shielding/mass.ts';
-import type { ShieldInput } from '../shielding/types.ts';
+import type { ShieldInput, TargetMaterialId } from '../shielding/types.ts';
 import type { StoredTrajectory } from './assessment.ts';
 import type { EnvironmentRequest } from './environment.ts';
 
@@ -18,6 +18,8 @@ export interface AssessmentSnapshot {
   readonly baselineOptionId?: string;
   /** False leaves out the doses at layers 10 % thinner and thicker. */
   readonly sensitivity?: boolean;
+  /** Materials besides silicon that doses are stated in. */
+  readonly otherTargetMaterialIds?: readonly TargetMaterialId[];
 }
 
 export interface SnapshotOption {

@@ -72,6 +72,7 @@ export interface AssessOrder {
       /** The same shield with every layer 10 % thinner and thicker; null where not asked for. */
       readonly thinnerPath: string | null;
       readonly thickerPath: string | null;
+      readonly otherTargetPaths: readonly string[];
     })[];
   })[];
 }
@@ -164,7 +165,7 @@ function fillOrder(order: AssessOrder): AssessmentInput {
     })),
     options: order.options.map((option) => ({
       ...option,
-      places: option.places.map(({ responsePath, thinnerPath, thickerPath, ...place }) => {
+      places: option.places.map(({ responsePath, thinnerPath, thickerPath, otherTargetPaths, ...place }) => {
         const thinner10Pct = responseAt(thinnerPath);
         const thicker10Pct = responseAt(thickerPath);
         return {
@@ -172,6 +173,7 @@ function fillOrder(order: AssessOrder): AssessmentInput {
           response: responseAt(responsePath),
           ...(thinner10Pct === null ? {} : { thinner10Pct }),
           ...(thicker10Pct === null ? {} : { thicker10Pct }),
+          otherTargets: otherTargetPaths.flatMap((path) => responseAt(path) ?? []),
         };
       }),
     })),

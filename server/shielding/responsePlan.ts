@@ -40,10 +40,11 @@ const LIKE_TARGET_Z = [10, 15] as const;
 
 /**
  * Whether the photon dose may count by kerma: at least one range of the bin's electrons of matter like the target's lies
- * about it, so that the electrons which photons set free are in equilibrium there. Open slabs have none behind.
+ * about it, so that the electrons which photons set free are in equilibrium there. Open slabs have none behind, and gallium arsenide
+ * has more electrons of its own than aluminium would give it.
  */
-function kermaHolds({ geometry, backing, layers }: Stack, energyMeV: number): boolean {
-  if (geometry === 'slab' && backing === 'none') return false;
+function kermaHolds({ geometry, backing, layers }: Stack, target: TargetMaterialId, energyMeV: number): boolean {
+  if (target === 'GaAs' || (geometry === 'slab' && backing === 'none')) return false;
   let facing = 0;
   for (let i = layers.length - 1; i >= 0; i--) {
     const z = layers[i].material.constituents.reduce((sum, part) => sum + part.massFraction * part.z, 0);
@@ -103,7 +104,7 @@ function sphereTransport(
   for (let radius = 2 * ball; radius < 0.75 * outer; radius *= 2) radii.push(radius);
   const rangeRatio = electronCsdaRange(layers[0].material, energyMeV) / total;
   const step = rangeRatio < 4 ? 4 : rangeRatio < 20 ? 2 : 1;
-  const kerma = kermaHolds(stack, energyMeV);
+  const kerma = kermaHolds(stack, target, energyMeV);
   const within = (radius: number) => radii.filter((mark) => mark > radius).length;
   const importances = (radius: number) => ({
     importance: step ** within(radius),
@@ -150,7 +151,7 @@ function shellTransport(
   const inner = 0.1 * (innerRadiusMm ?? 0);
   const rangeRatio = electronCsdaRange(layers[0].material, energyMeV) / total;
   const marks = rangeRatio < SPLIT_BELOW_RANGE ? SPLIT_DEPTHS.map((share) => (1 - share) * total) : [];
-  const kerma = kermaHolds(stack, energyMeV);
+  const kerma = kermaHolds(stack, target, energyMeV);
   // Photons that count by expectation need no help on their way.
   const forPhotons = kerma ? { photonImportance: 1 } : {};
   const importances = (depth: number) => ({
@@ -196,7 +197,7 @@ function slabTransport(
   const { layers, backing, arealDensityGPerCm2: total } = stack;
   const rangeRatio = electronCsdaRange(layers[0].material, energyMeV) / total;
   const marks = rangeRatio < SPLIT_BELOW_RANGE ? SPLIT_DEPTHS.map((share) => share * total) : [];
-  const kerma = kermaHolds(stack, energyMeV);
+  const kerma = kermaHolds(stack, target, energyMeV);
   const zone = kerma ? total : Math.max(0, total - ZONE_G_PER_CM2);
   const forPhotons = kerma ? { photonImportance: 1 } : {};
   const transport: TransportLayer[] = [];

@@ -28,6 +28,7 @@ beforeAll(async () => {
     stackIds: [stack.body.id],
     environment: { phase: { mode: 'published' } },
     sampling: { draws: 200, seed: 3 },
+    otherTargetMaterialIds: ['SiO2'],
   };
 });
 afterAll(() => service.stop());
@@ -79,6 +80,13 @@ describe('jobs', () => {
     const { result } = (await request(service.app).get(`/api/assessments/${done.id}`)).body;
     const { text } = await request(service.app).get(`/api/assessments/${done.id}/table.csv`);
     expect(text).toContain(String(result.shieldDose[0].doseKradSi.total));
+    const [{ doseKradSi, otherTargets }] = result.shieldDose;
+    const [{ thinner10Pct, thicker10Pct }] = result.sensitivity;
+    expect(otherTargets[0].targetMaterialId).toBe('SiO2');
+    // Stopping powers of SiO2 and silicon differ by some per cent only.
+    expect(Math.abs(otherTargets[0].doseKrad.total / doseKradSi.total - 1)).toBeLessThan(0.15);
+    expect(thinner10Pct.doseKradSi).toBeGreaterThan(doseKradSi.total);
+    expect(thicker10Pct.doseKradSi).toBeLessThan(doseKradSi.total);
     expect(text).toContain(String(result.margins[0].achievedRdmP95));
     expect(text).toContain("'=SUM(1)");
   });
