@@ -23,6 +23,8 @@ export function resultCsv(result: AssessmentResult): string {
     'doseP95_kradSi',
     'statisticalError_rel',
     'extrapolatedShare',
+    'doseLayersThinner10Pct_kradSi',
+    'doseLayersThicker10Pct_kradSi',
     'requiredRdm',
     'achievedRdmP50',
     'achievedRdmP95',
@@ -34,9 +36,10 @@ export function resultCsv(result: AssessmentResult): string {
   const nameOf = (rows: readonly { readonly name: string }[], key: string, id: string) =>
     rows.find((row) => (row as unknown as Record<string, unknown>)[key] === id)?.name ?? id;
   const rows = result.margins.map((margin) => {
-    const dose = result.shieldDose.find(
-      (row) => row.caseId === margin.caseId && row.optionId === margin.optionId && row.placeId === margin.placeId,
-    );
+    const here = (row: { caseId: string; optionId: string; placeId: string }) =>
+      row.caseId === margin.caseId && row.optionId === margin.optionId && row.placeId === margin.placeId;
+    const dose = result.shieldDose.find(here);
+    const moved = result.sensitivity.find(here);
     const option = result.options.find((entry) => entry.optionId === margin.optionId);
     const place = option?.places.find((entry) => entry.placeId === margin.placeId);
     return [
@@ -57,6 +60,8 @@ export function resultCsv(result: AssessmentResult): string {
       dose?.band?.p95 ?? null,
       dose?.statisticalErrorRel ?? null,
       dose?.extrapolatedFraction ?? null,
+      moved?.thinner10Pct?.doseKradSi ?? null,
+      moved?.thicker10Pct?.doseKradSi ?? null,
       margin.requiredRdm,
       margin.achievedRdm,
       margin.achievedRdmP95,

@@ -11,11 +11,12 @@ export function doseDepthScene(
   row: DoseDepthRow,
   caseName: string,
   shields: readonly { depthMm: number; label: string }[] = [],
+  size: { readonly widthPx: number; readonly heightPx: number } = { widthPx: WIDTH, heightPx: HEIGHT },
 ): Scene {
   const y = decadesRound([...row.totalKradSi, ...row.bandKradSi.p95], 7);
   const plot = new Plot(
-    WIDTH,
-    HEIGHT,
+    size.widthPx,
+    size.heightPx,
     {
       kind: 'log',
       from: row.depthsMm[0],
@@ -50,8 +51,8 @@ export function doseDepthScene(
     ['band', '5 to 95 %'],
   ]);
   return {
-    widthPx: WIDTH,
-    heightPx: HEIGHT,
+    widthPx: size.widthPx,
+    heightPx: size.heightPx,
     title: `Dose behind ${row.materialId}, ${caseName}`,
     description: `Total dose falls from ${three(row.totalKradSi[0])} krad(Si) at ${three(row.depthsMm[0])} mm to ${three(row.totalKradSi[row.totalKradSi.length - 1])} krad(Si) at ${three(row.depthsMm[row.depthsMm.length - 1])} mm.`,
     nodes: plot.nodes,
@@ -119,6 +120,13 @@ export function phaseScene(row: ShieldDoseRow, where: string): Scene {
   };
 }
 
+/** Characters that fit beside the bars; the read-out has the whole label. */
+const LABEL_CHARACTERS = 52;
+
+function shortened(label: string): string {
+  return label.length <= LABEL_CHARACTERS ? label : `${label.slice(0, LABEL_CHARACTERS - 1)}…`;
+}
+
 /** Margins as bars from the 95th to the 50th percentile of the dose, against what is required. */
 export function marginScene(entries: readonly { readonly label: string; readonly row: MarginRow }[]): Scene {
   const rowHeight = 24;
@@ -145,7 +153,7 @@ export function marginScene(entries: readonly { readonly label: string; readonly
     const low = x(row.achievedRdmP95!);
     const high = Math.max(x(row.achievedRdm!), low + 2);
     const met = row.verdict === 'meets';
-    nodes.push(text(left - 8, y + 4, label, 'end', 'ink'));
+    nodes.push(text(left - 8, y + 4, shortened(label), 'end', 'ink'));
     nodes.push({
       kind: 'path',
       d: `M${n(low)},${y - 6}H${n(high)}V${y + 6}H${n(low)}Z`,

@@ -106,11 +106,10 @@ export async function runAssessment(
   const shields = snapshot.options.flatMap((option) => option.places.map((place) => place.shield));
   const otherTargets = snapshot.otherTargetMaterialIds ?? [];
   const wanted = shields.flatMap((shield) => [
-    { shield, text: describeShield(shield), needed: true, targetMaterialId: STANDARD_RESPONSE.targetMaterialId },
+    { shield, text: describeShield(shield), targetMaterialId: STANDARD_RESPONSE.targetMaterialId },
     ...otherTargets.map((targetMaterialId) => ({
       shield,
       text: `${describeShield(shield)}, dose in ${targetMaterialId}`,
-      needed: false,
       targetMaterialId,
     })),
     ...(snapshot.sensitivity === false
@@ -118,12 +117,11 @@ export async function runAssessment(
       : [THINNER_FACTOR, THICKER_FACTOR].map((factor) => ({
           shield: scaleShield(shield, factor),
           text: `${describeShield(shield)}, all layers × ${factor}`,
-          needed: false,
           targetMaterialId: STANDARD_RESPONSE.targetMaterialId,
         }))),
   ]);
   const responses = new Map<string, { path: string | null; notAssessed: string | null }>();
-  for (const [index, { shield, text, needed, targetMaterialId }] of wanted.entries()) {
+  for (const [index, { shield, text, targetMaterialId }] of wanted.entries()) {
     const key = shieldKey(shield, { ...STANDARD_RESPONSE, targetMaterialId });
     if (responses.has(key)) continue;
     const report = (share: number) =>
@@ -135,11 +133,6 @@ export async function runAssessment(
       continue;
     }
     responses.set(key, { path: got.path, notAssessed: null });
-    for (const notice of needed ? got.response.notices : []) {
-      if (!notices.some((known) => known.text === notice)) {
-        notices.push({ code: 'response', severity: 'info', text: notice });
-      }
-    }
   }
   const pathOf = (shield: ShieldInput, targetMaterialId = STANDARD_RESPONSE.targetMaterialId) =>
     responses.get(shieldKey(shield, { ...STANDARD_RESPONSE, targetMaterialId }));

@@ -30,6 +30,8 @@ export interface TextStyle {
  * Sets text, figures and boxes down a page and opens the next page when one is full. Everything it sets is tagged, in
  * reading order. Positions are decided here and not by the PDF library, so that nothing is split where it reads badly.
  */
+const FIGURE_GAP = 14;
+
 export class PageFlow {
   readonly doc: Document;
   readonly headings: HeadingMark[] = [];
@@ -191,25 +193,39 @@ export class PageFlow {
 
   /** A numbered vector figure with its caption, kept together. */
   figure(scene: Scene, caption: string, widthPt: number = TEXT_WIDTH): void {
+    this.figures([{ scene, caption }], widthPt);
+  }
+
+  /** Figures side by side, each with its number and its caption under it. */
+  figures(
+    items: readonly { readonly scene: Scene; readonly caption: string }[],
+    widthPt: number = (TEXT_WIDTH - FIGURE_GAP * (items.length - 1)) / items.length,
+  ): void {
     const doc = this.doc;
-    const number = this.nextFigureNumber();
-    const height = (scene.heightPx / scene.widthPx) * widthPt;
-    const text = `Figure ${number}. ${caption}`;
+    const column = items.length === 1 ? TEXT_WIDTH : widthPt;
+    const numbered = items.map(({ scene, caption }) => ({
+      scene,
+      text: `Figure ${this.nextFigureNumber()}. ${caption}`,
+      height: (scene.heightPx / scene.widthPx) * widthPt,
+    }));
     doc.font('italic').fontSize(8.5);
-    const captionHeight = doc.heightOfString(text, { width: TEXT_WIDTH });
+    const captionHeight = Math.max(...numbered.map(({ text }) => doc.heightOfString(text, { width: column })));
+    const height = Math.max(...numbered.map((one) => one.height));
     this.ensure(height + captionHeight + 8);
     const top = this.y;
-    const left = PAGE.left + (TEXT_WIDTH - widthPt) / 2;
-    this.tag('Figure', () => drawScene(doc, scene, left, top, widthPt), {
-      alt: `${scene.title}. ${scene.description}`,
-      bbox: [left, top, left + widthPt, top + height],
-    } as PDFKit.Mixins.StructureElementOptions);
-    this.y = top + height + 4;
-    this.tag('Caption', () => {
-      doc.font('italic').fontSize(8.5).fillColor('#333333');
-      doc.text(text, PAGE.left, this.y, { width: TEXT_WIDTH });
-    });
-    this.y += captionHeight + 10;
+    for (const [index, { scene, text, height: own }] of numbered.entries()) {
+      const at = PAGE.left + index * (column + FIGURE_GAP);
+      const left = at + (column - widthPt) / 2;
+      this.tag('Figure', () => drawScene(doc, scene, left, top, widthPt), {
+        alt: `${scene.title}. ${scene.description}`,
+        bbox: [left, top, left + widthPt, top + own],
+      } as PDFKit.Mixins.StructureElementOptions);
+      this.tag('Caption', () => {
+        doc.font('italic').fontSize(8.5).fillColor('#333333');
+        doc.text(text, at, top + height + 4, { width: column });
+      });
+    }
+    this.y = top + height + 4 + captionHeight + 10;
   }
 
   finish(): void {

@@ -44,7 +44,7 @@ function draw(input: ReportInput, contents: readonly HeadingMark[]): { doc: PDFK
   const flow = new PageFlow(doc);
   cover(flow, input);
   contentsPages(flow, contents);
-  flow.newPage();
+  flow.space(16);
   for (const section of SECTIONS) section(flow, input);
   flow.finish();
   runningLines(doc, input);

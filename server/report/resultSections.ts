@@ -5,6 +5,9 @@ import type { Section } from './section.ts';
 import { drawTable } from './table.ts';
 import { CAUTIONS, VERDICT_WORDS } from './words.ts';
 
+/** A heading and the figure under it stay on one page, points. */
+const KEEP_WITH_FIGURE = 270;
+
 export const purpose: Section = (flow, { result }) => {
   flow.heading(1, 'Purpose and caution');
   flow.paragraph(
@@ -67,12 +70,14 @@ export const summary: Section = (flow, { result }) => {
 
 export const doseDepth: Section = (flow, { result }) => {
   const n = names(result);
-  flow.heading(1, 'Dose against depth in aluminium');
-  for (const row of result.doseDepth) {
-    flow.figure(
-      doseDepthScene(row, n.case(row.caseId)),
-      `Dose behind aluminium, ${n.case(row.caseId)}: ${row.targetText}. Band: 5 to 95 %. Source: this assessment.`,
-      400,
+  flow.heading(1, 'Dose against depth in aluminium', KEEP_WITH_FIGURE);
+  for (const caseId of new Set(result.doseDepth.map((row) => row.caseId))) {
+    const rows = result.doseDepth.filter((row) => row.caseId === caseId);
+    flow.figures(
+      rows.map((row) => ({
+        scene: doseDepthScene(row, n.case(caseId), [], { widthPx: 400, heightPx: 310 }),
+        caption: `Dose behind aluminium, ${n.case(caseId)}: ${row.targetText}. Band: 5 to 95 %. Source: this assessment.`,
+      })),
     );
   }
 };
@@ -83,17 +88,17 @@ export const doses: Section = (flow, { result }) => {
   drawTable(flow, {
     caption: 'Dose at each place, krad(Si)',
     columns: [
-      { header: 'Case', weight: 1.8 },
-      { header: 'Option', weight: 1.8 },
-      { header: 'Place', weight: 1.6 },
-      { header: 'Nominal', weight: 1, align: 'right' },
-      { header: '5 %', weight: 1, align: 'right' },
-      { header: '50 %', weight: 1, align: 'right' },
-      { header: '95 %', weight: 1, align: 'right' },
-      { header: 'Electrons', weight: 1.15, align: 'right' },
-      { header: 'Photons', weight: 1, align: 'right' },
-      { header: 'Protons', weight: 1.05, align: 'right' },
-      { header: 'Not measured', weight: 1.15, align: 'right' },
+      { header: 'Case', weight: 1.45 },
+      { header: 'Option', weight: 1.65 },
+      { header: 'Place', weight: 1.45 },
+      { header: 'Nominal', weight: 1.3, align: 'right' },
+      { header: '5 %', weight: 1.3, align: 'right' },
+      { header: '50 %', weight: 1.3, align: 'right' },
+      { header: '95 %', weight: 1.3, align: 'right' },
+      { header: 'Electrons', weight: 1.25, align: 'right' },
+      { header: 'Photons', weight: 1.15, align: 'right' },
+      { header: 'Protons', weight: 1.1, align: 'right' },
+      { header: 'Not measured', weight: 1.3, align: 'right' },
     ],
     size: 7.2,
     rows: result.shieldDose.map((row) => {
@@ -119,7 +124,7 @@ export const doses: Section = (flow, { result }) => {
 
 export const margins: Section = (flow, { result }) => {
   const n = names(result);
-  flow.heading(1, 'Design margins');
+  flow.heading(1, 'Design margins', KEEP_WITH_FIGURE);
   const low = [...result.margins]
     .filter((row) => row.achievedRdmAtVerdict !== null)
     .sort((a, b) => a.achievedRdmAtVerdict! / a.requiredRdm - b.achievedRdmAtVerdict! / b.requiredRdm);
@@ -138,15 +143,15 @@ export const margins: Section = (flow, { result }) => {
     drawTable(flow, {
       caption: `Margins with ${option.name}`,
       columns: [
-        { header: 'Part', weight: 1.9 },
-        { header: 'Case', weight: 1.9 },
+        { header: 'Part', weight: 1.7 },
+        { header: 'Case', weight: 1.7 },
         { header: 'Capability, krad(Si)', weight: 1.35, align: 'right' },
-        { header: 'Dose 50 %, krad(Si)', weight: 1.2, align: 'right' },
-        { header: 'Dose 95 %, krad(Si)', weight: 1.2, align: 'right' },
+        { header: 'Dose 50 %, krad(Si)', weight: 1.35, align: 'right' },
+        { header: 'Dose 95 %, krad(Si)', weight: 1.35, align: 'right' },
         { header: 'Required', weight: 1.15, align: 'right' },
         { header: 'Achieved 50 %', weight: 1.2, align: 'right' },
         { header: 'Achieved 95 %', weight: 1.2, align: 'right' },
-        { header: 'P(margin met)', weight: 1, align: 'right' },
+        { header: 'P(margin met)', weight: 1.3, align: 'right' },
         { header: 'Verdict', weight: 1.6 },
       ],
       size: 7.2,
@@ -171,7 +176,7 @@ export const margins: Section = (flow, { result }) => {
 
 export const comparison: Section = (flow, { result }) => {
   const n = names(result);
-  flow.heading(1, 'Comparison of options');
+  flow.heading(1, 'Comparison of options', KEEP_WITH_FIGURE);
   const [first] = result.comparison;
   if (first !== undefined) {
     const rows = result.comparison.filter((row) => row.caseId === first.caseId && row.placeId === first.placeId);
@@ -219,20 +224,24 @@ export const sensitivity: Section = (flow, { result }) => {
   drawTable(flow, {
     caption: 'How the nominal dose moves, krad(Si)',
     columns: [
-      { header: 'Case', weight: 2 },
-      { header: 'Option', weight: 2 },
-      { header: 'Place', weight: 1.7 },
-      { header: 'Lowest phase', weight: 1.1, align: 'right' },
-      { header: 'Highest phase', weight: 1.1, align: 'right' },
-      { header: 'Belts halved', weight: 1.1, align: 'right' },
-      { header: 'Belts doubled', weight: 1.1, align: 'right' },
-      { header: 'Belt factor at requirement', weight: 1.3, align: 'right' },
+      { header: 'Case', weight: 1.5 },
+      { header: 'Option', weight: 1.7 },
+      { header: 'Place', weight: 1.45 },
+      { header: 'Layers −10 %', weight: 1.3, align: 'right' },
+      { header: 'Layers +10 %', weight: 1.3, align: 'right' },
+      { header: 'Lowest phase', weight: 1.3, align: 'right' },
+      { header: 'Highest phase', weight: 1.3, align: 'right' },
+      { header: 'Belts halved', weight: 1.3, align: 'right' },
+      { header: 'Belts doubled', weight: 1.3, align: 'right' },
+      { header: 'Belt factor at requirement', weight: 1.5, align: 'right' },
     ],
     size: 7.2,
     rows: result.sensitivity.map((row) => [
       n.case(row.caseId),
       n.option(row.optionId),
       n.place(row.optionId, row.placeId),
+      three(row.thinner10Pct?.doseKradSi),
+      three(row.thicker10Pct?.doseKradSi),
       three(row.phase?.lowestKradSi),
       three(row.phase?.highestKradSi),
       three(row.beltsHalvedKradSi),

@@ -1,8 +1,8 @@
 import { contentHash } from '../canonical.ts';
 import { ELECTRON_EDGES_MEV, PROTON_EDGES_MEV } from '../numeric/spectrumGrid.ts';
 import { ENGINE_VERSION } from '../version.ts';
-import { REFERENCE_VERSION, referenceDoses } from './effort.ts';
-import { type ResponseOptions, responseKey } from './response.ts';
+import { REFERENCE_VERSION, referenceDoses, referenceVariances } from './effort.ts';
+import { noticesOf, type ResponseOptions, responseKey } from './response.ts';
 import {
   type Blend,
   blendOf,
@@ -77,15 +77,16 @@ export function composeShield(
     }
   }
   const [first] = responses;
+  const referenceErrorRel = worstRelativeError(mean);
   return {
     sha256: shieldKey(shield, options),
     engineVersion: first.engineVersion,
     effort: options.effort,
-    referenceErrorRel: Math.max(...responses.map((response) => response.referenceErrorRel)),
+    referenceErrorRel,
     targetMaterialId: options.targetMaterialId,
     description: `${describeShield(shield)}; ${howAveraged(shield, rays, moved)}`,
     ...mean,
-    notices: [...new Set(responses.flatMap((response) => response.notices))],
+    notices: noticesOf(describeShield(shield), referenceErrorRel, options.effort),
   };
 }
 
@@ -187,6 +188,14 @@ function blended(
     for (let bin = 0; bin < bins; bin++) sigmas[bin] += (slope[bin] * own[bin]) ** 2;
   }
   return { values, sigmas: sigmas.map(Math.sqrt) };
+}
+
+function worstRelativeError({ electron }: Mean): number {
+  const doses = referenceDoses(electron.doseGyCm2.map((dose, bin) => dose + electron.bremsstrahlungGyCm2[bin]));
+  const variances = referenceVariances(
+    electron.doseSigmaGyCm2.map((sigma, bin) => sigma ** 2 + electron.bremsstrahlungSigmaGyCm2[bin] ** 2),
+  );
+  return Math.max(...doses.map((dose, i) => Math.sqrt(variances[i]) / dose));
 }
 
 function largestMove(a: Mean, b: Mean): number {

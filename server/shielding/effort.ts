@@ -112,3 +112,8 @@ function neighbourly(variance: Float64Array): Float64Array {
 export function referenceDoses(perBin: Float64Array): number[] {
   return REFERENCE.spectra.map(({ weights }) => perBin.reduce((sum, value, bin) => sum + weights[bin] * value, 0));
 }
+
+/** Variance of the dose of every reference spectrum from variances per bin, bins independent. */
+export function referenceVariances(perBin: Float64Array): number[] {
+  return REFERENCE.spectra.map(({ weights }) => perBin.reduce((sum, value, bin) => sum + weights[bin] ** 2 * value, 0));
+}

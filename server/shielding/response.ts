@@ -222,15 +222,18 @@ export function finishResponse(
     description: `${describeStack(checked)}; ${targetText(checked, options.targetMaterialId)}`,
     electron,
     proton,
-    notices: [
-      'Protons slow down along straight paths; nuclear reactions are not included.',
-      ...(referenceErrorRel <= REACHED * EFFORT[options.effort].errorRel
-        ? []
-        : [
-            `Behind ${describeStack(checked)} the statistical error of the dose reached ${(100 * referenceErrorRel).toPrecision(2)} % in the least sure of the reference spectra within the effort allowed.`,
-          ]),
-    ],
+    notices: noticesOf(describeStack(checked), referenceErrorRel, options.effort),
   };
+}
+
+/** What a reader of doses behind a shield must know of its response. */
+export function noticesOf(shieldText: string, referenceErrorRel: number, effort: EffortClass): string[] {
+  const nuclear = 'Protons slow down along straight paths; nuclear reactions are not included.';
+  if (referenceErrorRel <= REACHED * EFFORT[effort].errorRel) return [nuclear];
+  return [
+    nuclear,
+    `Behind ${shieldText} the statistical error of the dose reached ${(100 * referenceErrorRel).toPrecision(2)} % in the least sure of the reference spectra within the effort allowed.`,
+  ];
 }
 
 /** An error this many times the one asked for counts as reached: variances are estimates. */
