@@ -3,6 +3,7 @@ import helmet from 'helmet';
 import type { Logger } from 'pino';
 import { assessmentRoutes } from './api/assessments.ts';
 import { catalogueRoutes } from './api/catalogue.ts';
+import { comparisonRoutes } from './api/comparison.ts';
 import { exposureRoutes } from './api/exposures.ts';
 import { jobRoutes } from './api/jobs.ts';
 import { DOCUMENTATION_CSS, documentationPage, openApiDocument } from './api/openapi.ts';
@@ -52,6 +53,7 @@ export function createApp(shop: Shop, config: Config, log: Logger, client?: expr
     ...trajectoryRoutes(shop, config.maxUploadBytes),
     ...exposureRoutes(shop),
     ...assessmentRoutes(shop),
+    ...comparisonRoutes(shop),
     ...thicknessRoutes(shop),
     ...reportRoutes(shop),
     ...jobRoutes(shop),

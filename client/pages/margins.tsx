@@ -5,6 +5,7 @@ import { type AssessmentDetail, type AssessmentItem, all, type CaseItem, call, t
 import { Figure } from '../figure.tsx';
 import { Empty, Link, ProblemBox, Progress, useLoaded, VerdictTag } from '../parts.tsx';
 import { go, route, studyId } from '../state.ts';
+import { Comparison } from './comparison.tsx';
 
 export function MarginsPage() {
   const study = studyId.value!;
@@ -25,7 +26,7 @@ export function MarginsPage() {
       {value !== null && value.length === 0 && (
         <Empty>No assessment yet. Choose cases and options above; the doses follow in a minute or so.</Empty>
       )}
-      {chosen !== undefined && <Assessment key={chosen} id={chosen} />}
+      {chosen !== undefined && <Assessment key={chosen} id={chosen} others={value ?? []} />}
     </>
   );
 }
@@ -86,7 +87,7 @@ function NewAssessment({ onMade }: { onMade: () => void }) {
   );
 }
 
-function Assessment({ id }: { id: string }) {
+function Assessment({ id, others }: { id: string; others: readonly AssessmentItem[] }) {
   const [detail, setDetail] = useState<AssessmentDetail | null>(null);
   const [error, setError] = useState<unknown>(null);
   useEffect(() => {
@@ -122,7 +123,12 @@ function Assessment({ id }: { id: string }) {
       />
     );
   }
-  return <Result id={id} result={detail.result} />;
+  return (
+    <>
+      <Result id={id} result={detail.result} />
+      <Comparison id={id} others={others} />
+    </>
+  );
 }
 
 function Result({ id, result }: { id: string; result: AssessmentResult }) {

@@ -22,14 +22,19 @@ export interface DoseChange {
   readonly nominalAfterKradSi: number | null;
   readonly medianBeforeKradSi: number | null;
   readonly medianAfterKradSi: number | null;
+  readonly p95BeforeKradSi: number | null;
+  readonly p95AfterKradSi: number | null;
   /** Nominal after / before. */
   readonly ratio: number | null;
 }
 
-export interface VerdictChange {
+/** Margin of one part at the percentile of the verdict, before and after. */
+export interface MarginChange {
   readonly partName: string;
   readonly caseName: string;
   readonly optionName: string;
+  readonly requiredRdmBefore: number;
+  readonly requiredRdmAfter: number;
   readonly achievedRdmBefore: number | null;
   readonly achievedRdmAfter: number | null;
   readonly verdictBefore: Verdict;
@@ -42,8 +47,10 @@ export interface AssessmentComparison {
   readonly settings: readonly SettingChange[];
   /** Every shield dose that stands in both, whether it moved or not. */
   readonly doses: readonly DoseChange[];
-  /** Margins whose verdict changed. */
-  readonly verdicts: readonly VerdictChange[];
+  /** Every margin that stands in both, whether it moved or not. */
+  readonly margins: readonly MarginChange[];
+  /** Those whose verdict changed. */
+  readonly verdicts: readonly MarginChange[];
   /** Rows that stand in one of the two only: `case / option / place`. */
   readonly onlyBefore: readonly string[];
   readonly onlyAfter: readonly string[];
@@ -71,17 +78,23 @@ export function compareAssessments(before: AssessmentResult, after: AssessmentRe
       nominalAfterKradSi: is,
       medianBeforeKradSi: then.row.band?.p50 ?? null,
       medianAfterKradSi: now.row.band?.p50 ?? null,
+      p95BeforeKradSi: then.row.band?.p95 ?? null,
+      p95AfterKradSi: now.row.band?.p95 ?? null,
       ratio: was !== null && is !== null && was > 0 ? is / was : null,
     });
   }
-  const verdicts: VerdictChange[] = [];
+  const margins: MarginChange[] = [];
+  const moved = new Set<string>();
   for (const [key, now] of namedMargins(after)) {
     const then = marginsBefore.get(key);
-    if (then === undefined || then.row.verdict === now.row.verdict) continue;
-    verdicts.push({
+    if (then === undefined) continue;
+    if (then.placeName !== now.placeName) moved.add(now.partName);
+    margins.push({
       partName: now.partName,
       caseName: now.caseName,
       optionName: now.optionName,
+      requiredRdmBefore: then.row.requiredRdm,
+      requiredRdmAfter: now.row.requiredRdm,
       achievedRdmBefore: then.row.achievedRdmAtVerdict,
       achievedRdmAfter: now.row.achievedRdmAtVerdict,
       verdictBefore: then.row.verdict,
@@ -90,10 +103,14 @@ export function compareAssessments(before: AssessmentResult, after: AssessmentRe
   }
   return {
     sameResult: before.provenance.resultSha256 === after.provenance.resultSha256,
-    inputs: inputChanges(before.provenance, after.provenance),
+    inputs: [
+      ...inputChanges(before.provenance, after.provenance),
+      ...[...moved].map((name) => ({ kind: 'partPlace', name, change: 'changed' as const })),
+    ],
     settings: settingChanges(before, after),
     doses,
-    verdicts,
+    margins,
+    verdicts: margins.filter(({ verdictBefore, verdictAfter }) => verdictBefore !== verdictAfter),
     onlyBefore: [...dosesBefore.keys()].filter((key) => !dosesAfter.has(key)).map(readable),
     onlyAfter: [...dosesAfter.keys()].filter((key) => !dosesBefore.has(key)).map(readable),
   };
@@ -149,25 +166,35 @@ interface Named {
   readonly optionName: string;
 }
 
-function names(result: AssessmentResult): { caseName: (id: string) => string; optionName: (id: string) => string } {
-  const cases = new Map(result.cases.map(({ caseId, name }) => [caseId, name]));
-  const options = new Map(result.options.map(({ optionId, name }) => [optionId, name]));
-  return { caseName: (id) => cases.get(id) ?? id, optionName: (id) => options.get(id) ?? id };
+interface Names {
+  caseName(id: string): string;
+  optionName(id: string): string;
+  placeName(optionId: string, placeId: string): string;
 }
 
-function namedDoses(result: AssessmentResult): Map<string, Named & { placeName: string; row: ShieldDoseRow }> {
-  const { caseName, optionName } = names(result);
+function names(result: AssessmentResult): Names {
+  const cases = new Map(result.cases.map(({ caseId, name }) => [caseId, name]));
+  const options = new Map(result.options.map(({ optionId, name }) => [optionId, name]));
   const places = new Map(
     result.options.flatMap(({ optionId, places: sites }) =>
       sites.map(({ placeId, name }) => [`${optionId}\n${placeId}`, name] as const),
     ),
   );
+  return {
+    caseName: (id) => cases.get(id) ?? id,
+    optionName: (id) => options.get(id) ?? id,
+    placeName: (optionId, placeId) => places.get(`${optionId}\n${placeId}`) ?? placeId,
+  };
+}
+
+function namedDoses(result: AssessmentResult): Map<string, Named & { placeName: string; row: ShieldDoseRow }> {
+  const { caseName, optionName, placeName } = names(result);
   return new Map(
     result.shieldDose.map((row) => {
       const named = {
         caseName: caseName(row.caseId),
         optionName: optionName(row.optionId),
-        placeName: places.get(`${row.optionId}\n${row.placeId}`) ?? row.placeId,
+        placeName: placeName(row.optionId, row.placeId),
         row,
       };
       return [`${named.caseName}\n${named.optionName}\n${named.placeName}`, named] as const;
@@ -175,8 +202,10 @@ function namedDoses(result: AssessmentResult): Map<string, Named & { placeName: 
   );
 }
 
-function namedMargins(result: AssessmentResult): Map<string, Named & { partName: string; row: MarginRow }> {
-  const { caseName, optionName } = names(result);
+function namedMargins(
+  result: AssessmentResult,
+): Map<string, Named & { partName: string; placeName: string; row: MarginRow }> {
+  const { caseName, optionName, placeName } = names(result);
   const parts = new Map(result.parts.map(({ partId, name }) => [partId, name]));
   return new Map(
     result.margins.map((row) => {
@@ -184,6 +213,7 @@ function namedMargins(result: AssessmentResult): Map<string, Named & { partName:
         caseName: caseName(row.caseId),
         optionName: optionName(row.optionId),
         partName: parts.get(row.partId) ?? row.partId,
+        placeName: placeName(row.optionId, row.placeId),
         row,
       };
       return [`${named.partName}\n${named.caseName}\n${named.optionName}`, named] as const;

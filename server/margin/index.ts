@@ -5,8 +5,8 @@ export {
   compareAssessments,
   type DoseChange,
   type InputChange,
+  type MarginChange,
   type SettingChange,
-  type VerdictChange,
 } from './compare.ts';
 export type {
   AssessedCase,

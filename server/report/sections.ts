@@ -1,7 +1,7 @@
+import { changes } from './changeSection.ts';
 import {
   assumptions,
   cautions,
-  changes,
   environment,
   evidence,
   exclusions,

@@ -43,9 +43,23 @@ describe('compareAssessments', () => {
     expect(changed.settings).toEqual([{ setting: 'verdictPercentile', before: '95', after: '90' }]);
     expect(changed.doses).toHaveLength(1);
     expect(changed.doses[0].ratio!).toBeCloseTo(0.1, 12);
+    expect(changed.margins).toHaveLength(1);
+    const [{ achievedRdmBefore, achievedRdmAfter }] = changed.margins;
+    expect(achievedRdmAfter!).toBeGreaterThan(5 * achievedRdmBefore!);
     expect(changed.verdicts).toEqual([
       expect.objectContaining({ partName: 'Memory', verdictBefore: 'needsSectorAnalysis', verdictAfter: 'meets' }),
     ]);
     expect(changed.onlyAfter).toEqual(['Flyby / Added / Bay']);
+  });
+
+  it('names a part that sits elsewhere', () => {
+    const input = toyInput();
+    const [option] = input.options;
+    const [place] = option.places;
+    const both = { ...input, options: [{ ...option, places: [place, { ...place, placeId: 'other', name: 'Vault' }] }] };
+    const moved = { ...both, parts: both.parts.map((part) => ({ ...part, placeId: 'other' })) };
+    expect(compareAssessments(assess(both), assess(moved)).inputs).toEqual([
+      { kind: 'partPlace', name: 'Memory', change: 'changed' },
+    ]);
   });
 });

@@ -45,9 +45,10 @@ function artefact(): FluenceArtefact {
   };
 }
 
-export function smallResult(): AssessmentResult {
+/** @param thicker - steps of the aluminium table that every shield is thicker by */
+export function smallResult(thicker = 0): AssessmentResult {
   const table = aluminiumDoseDepth();
-  const at = (index: number) => table.responses[index];
+  const at = (index: number) => table.responses[index + thicker];
   const place = (placeId: string, index: number) => ({
     placeId,
     name: `Place ${placeId}`,

@@ -4,9 +4,10 @@ import { tmpdir } from 'node:os';
 import { join } from 'node:path';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { three } from '../../../server/figures/index.ts';
+import { compareAssessments } from '../../../server/margin/index.ts';
 import { renderReport } from '../../../server/report/index.ts';
-import { CAUTIONS } from '../../../server/report/words.ts';
-import { smallReport } from './fixture.ts';
+import { CAUTIONS, VERDICT_WORDS } from '../../../server/report/words.ts';
+import { smallReport, smallResult } from './fixture.ts';
 
 const has = (command: string) => spawnSync(command, ['--version']).error === undefined;
 const TOOLS = has('pdftotext') && has('qpdf') && has('pdffonts');
@@ -55,5 +56,20 @@ describe('report', () => {
       .slice(2);
     expect(fonts.length).toBeGreaterThan(0);
     for (const font of fonts) expect(font).toMatch(/\syes\s+(yes|no)\s+yes\s/);
+  });
+
+  it.skipIf(!TOOLS)('prints what changed against the previous issue, dose by dose', async () => {
+    const comparison = compareAssessments(smallResult(4), input.result);
+    expect(comparison.inputs.length).toBeGreaterThan(0);
+    const previous = { documentNumber: 'SL-7', issue: 'A', comparison };
+    writeFileSync(join(folder, 'changed.pdf'), await renderReport({ ...input, previous }));
+    const text = execFileSync('pdftotext', ['-layout', join(folder, 'changed.pdf'), '-'], { encoding: 'utf8' });
+    const section = text.slice(text.lastIndexOf('Change against the previous issue')).replaceAll(/\s+/g, ' ');
+    expect(section).toContain('Compared with SL-7, issue A');
+    for (const row of comparison.doses) {
+      expect(section).toContain(three(row.nominalBeforeKradSi));
+      expect(section).toContain(three(row.ratio));
+    }
+    for (const { verdictAfter } of comparison.verdicts) expect(section).toContain(VERDICT_WORDS[verdictAfter]);
   });
 });
