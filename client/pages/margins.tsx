@@ -60,7 +60,7 @@ function NewAssessment({ onMade }: { onMade: () => void }) {
       <summary>New assessment</summary>
       <form onSubmit={start}>
         <label>
-          Name <input name="name" required value="Assessment" />
+          Name <input name="name" required defaultValue="Assessment" />
         </label>
         <fieldset>
           <legend>Cases</legend>

@@ -22,8 +22,13 @@ export function PartsPage() {
     }
   };
   const remove = async (id: string) => {
-    await call('DELETE', `/api/parts/${id}`);
-    again();
+    try {
+      await call('DELETE', `/api/parts/${id}`);
+      setFailure(null);
+      again();
+    } catch (problem) {
+      setFailure(problem);
+    }
   };
   return (
     <>
@@ -88,9 +93,11 @@ export function PartsPage() {
             type="file"
             accept=".csv,text/csv"
             onChange={async (event) => {
-              const file = event.currentTarget.files?.[0];
-              if (file !== undefined) send(await file.text());
-              event.currentTarget.value = '';
+              // The event forgets its element once the handler waits.
+              const input = event.currentTarget;
+              const file = input.files?.[0];
+              if (file !== undefined) await send(await file.text());
+              input.value = '';
             }}
           />
         </label>

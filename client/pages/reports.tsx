@@ -80,9 +80,13 @@ export function ReportsPage() {
         <form class="grid" onSubmit={issue}>
           <label>
             Assessment{' '}
-            <select name="assessmentId" value={word === 'new' ? wanted : done[done.length - 1].id}>
+            <select name="assessmentId">
               {done.map((entry) => (
-                <option key={entry.id} value={entry.id}>
+                <option
+                  key={entry.id}
+                  value={entry.id}
+                  selected={entry.id === (word === 'new' ? wanted : done[done.length - 1].id)}
+                >
                   {entry.name}
                 </option>
               ))}

@@ -233,7 +233,8 @@ function OptionForm({ stacks, onMade }: { stacks: readonly StackItem[]; onMade: 
           <fieldset key={k} class="grid">
             <legend>Place {k + 1}</legend>
             <label>
-              Place, as the parts name it <input name={`placeId${k}`} required value={k === 0 ? 'deck' : 'core'} />
+              Place, as the parts name it{' '}
+              <input name={`placeId${k}`} required defaultValue={k === 0 ? 'deck' : 'core'} />
             </label>
             <label>
               Stack{' '}
@@ -246,7 +247,7 @@ function OptionForm({ stacks, onMade }: { stacks: readonly StackItem[]; onMade: 
               </select>
             </label>
             <label>
-              Area, m² <input name={`area${k}`} inputMode="decimal" value="1" />
+              Area, m² <input name={`area${k}`} inputMode="decimal" defaultValue="1" />
             </label>
           </fieldset>
         ))}

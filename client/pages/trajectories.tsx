@@ -231,7 +231,7 @@ function Sketch({ onKept }: { onKept: () => void }) {
       <summary>Sketch a flyby, when no ephemeris exists yet</summary>
       <form class="grid" onSubmit={make}>
         <label>
-          Name <input name="name" required value="Sketched flyby" />
+          Name <input name="name" required defaultValue="Sketched flyby" />
         </label>
         <label>
           Planet{' '}
@@ -241,11 +241,11 @@ function Sketch({ onKept }: { onKept: () => void }) {
           </select>
         </label>
         <label>
-          Periapsis, UTC <input name="periapsisUtc" required value="2045-06-14T09:30:00" />
+          Periapsis, UTC <input name="periapsisUtc" required defaultValue="2045-06-14T09:30:00" />
         </label>
         {SKETCH_FIELDS.map(([field, label, value]) => (
           <label key={field}>
-            {label} <input name={field} required inputMode="decimal" value={value} />
+            {label} <input name={field} required inputMode="decimal" defaultValue={value} />
           </label>
         ))}
         <button type="submit" class="primary">
@@ -300,7 +300,7 @@ function Cases({ trajectories }: { trajectories: readonly TrajectoryItem[] }) {
           </label>
           {trajectories.map((entry) => (
             <label key={entry.id}>
-              {entry.name}, times flown <input name={entry.id} inputMode="numeric" value="0" />
+              {entry.name}, times flown <input name={entry.id} inputMode="numeric" defaultValue="0" />
             </label>
           ))}
           <button type="submit" class="primary">
