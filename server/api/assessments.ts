@@ -5,7 +5,7 @@ import type { JobRow } from '../../db/jobs.ts';
 import { checkOtherSource, type OtherSourceInput } from '../dose/index.ts';
 import { AppError } from '../errors.ts';
 import type { AssessmentSnapshot, SnapshotOption } from '../jobs/snapshot.ts';
-import { type AssessmentResult, checkParts } from '../margin/index.ts';
+import { type AssessedCase, type AssessmentResult, checkParts } from '../margin/index.ts';
 import { documentRoutes, sendFile } from './documentRoutes.ts';
 import { resultCsv } from './resultCsv.ts';
 import { defineRoute, type Route } from './routes.ts';
@@ -118,20 +118,25 @@ export async function resultOf(shop: Shop, assessmentId: string): Promise<Assess
   return JSON.parse(await readFile(resultPath(shop, assessmentId), 'utf8')) as AssessmentResult;
 }
 
-/** Takes the snapshot, checks it whole, and queues the job; nothing is written when anything is refused. */
-export function startAssessment(shop: Shop, request: AssessmentRequest): { id: string; jobId: string } {
-  const study = found(shop.studies.get(request.studyId), 'study', request.studyId);
-  const needOne = (field: string, first: readonly string[] | undefined, second: readonly string[] | undefined) => {
-    if ((first?.length ?? 0) + (second?.length ?? 0) === 0) {
-      throw new AppError('REQUEST_INVALID', `${field}: at least one is needed.`, [
-        { pointer: `#/${field}`, field, detail: 'at least one is needed', got: 0, limit: 1 },
-      ]);
-    }
-  };
-  needOne('caseIds', request.caseIds, request.trajectoryIds);
-  needOne('optionIds', request.optionIds, request.stackIds);
+function needOne(field: string, first: readonly string[] | undefined, second: readonly string[] | undefined): void {
+  if ((first?.length ?? 0) + (second?.length ?? 0) === 0) {
+    throw new AppError('REQUEST_INVALID', `${field}: at least one is needed.`, [
+      { pointer: `#/${field}`, field, detail: 'at least one is needed', got: 0, limit: 1 },
+    ]);
+  }
+}
 
-  const cases = [
+/**
+ * The cases of a request; a trajectory alone is a case of one leg.
+ *
+ * @throws {AppError} REQUEST_INVALID when there is none, NOT_FOUND for an unknown id
+ */
+export function requestedCases(
+  shop: Shop,
+  request: { readonly caseIds?: string[] | undefined; readonly trajectoryIds?: string[] | undefined },
+): AssessedCase[] {
+  needOne('caseIds', request.caseIds, request.trajectoryIds);
+  return [
     ...(request.caseIds ?? []).map((id) => {
       const document = found(shop.cases.get(id), 'case', id);
       return { caseId: id, name: document.name, legs: document.body.legs };
@@ -141,6 +146,14 @@ export function startAssessment(shop: Shop, request: AssessmentRequest): { id: s
       return { caseId: id, name: document.name, legs: [{ trajectoryId: id, repetitions: 1 }] };
     }),
   ];
+}
+
+/** Takes the snapshot, checks it whole, and queues the job; nothing is written when anything is refused. */
+export function startAssessment(shop: Shop, request: AssessmentRequest): { id: string; jobId: string } {
+  const study = found(shop.studies.get(request.studyId), 'study', request.studyId);
+  needOne('optionIds', request.optionIds, request.stackIds);
+
+  const cases = requestedCases(shop, request);
   const trajectoryIds = [...new Set(cases.flatMap((entry) => entry.legs.map((leg) => leg.trajectoryId)))];
   const options: SnapshotOption[] = [
     ...(request.optionIds ?? []).map((id) => {

@@ -8,10 +8,14 @@ import type { EnvironmentChoice } from '../fluence/index.ts';
 import { exposureOf, runAssessment, type StoredTrajectory, type Workshop } from '../jobs/assessment.ts';
 import type { Pool } from '../jobs/pool.ts';
 import { type JobHandler, Runner } from '../jobs/runner.ts';
+import { shieldResponseOf } from '../jobs/shieldResponses.ts';
 import type { AssessmentSnapshot, SnapshotPlace } from '../jobs/snapshot.ts';
+import { runThickness, type ThicknessSnapshot } from '../jobs/thickness.ts';
 import type { PartInput } from '../margin/index.ts';
+import { describeShield } from '../shielding/shieldPlan.ts';
 import type { StackInput } from '../shielding/types.ts';
 import type { TrajectorySummary } from '../trajectory/index.ts';
+import type { ResponseOrder } from './responses.ts';
 
 export interface StudyBody {
   readonly description: string;
@@ -84,6 +88,7 @@ export class Shop implements Workshop {
     this.reports = documents('reports');
     const handlers = new Map<string, JobHandler>([
       ['assessment', (input, context) => runAssessment(this, this.assessments, (input as { id: string }).id, context)],
+      ['thickness', (input, context) => runThickness(this, input as ThicknessSnapshot, context)],
       [
         'exposure',
         async (input, context) => {
@@ -91,6 +96,17 @@ export class Shop implements Workshop {
           context.progress(0.05, 'Following the path through the belts');
           const { key } = await exposureOf(this, this.storedTrajectory(trajectoryId), environment, context);
           return { key };
+        },
+      ],
+      [
+        'response',
+        async (input, context) => {
+          const { shield, options } = input as ResponseOrder;
+          const text = describeShield(shield);
+          const { response } = await shieldResponseOf(this, shield, options, context.signal, (share) =>
+            context.progress(share, `Carrying particles through ${text}`),
+          );
+          return { sha256: response.sha256, referenceErrorRel: response.referenceErrorRel };
         },
       ],
     ]);

@@ -24,6 +24,7 @@ export type * from './result.ts';
 export { VERDICTS } from './result.ts';
 export { scaleShield, THICKER_FACTOR, THINNER_FACTOR } from './scaleShield.ts';
 export {
+  checkThickness,
   solveThickness,
   type ThicknessCandidate,
   type ThicknessInput,

@@ -86,7 +86,7 @@ export interface ThicknessResult {
  *   target inside [minimumMm, maximumMm]
  */
 export async function solveThickness(input: ThicknessInput, tools: ThicknessTools): Promise<ThicknessResult> {
-  check(input);
+  checkThickness(input);
   const { cases } = prepareCases(input);
   const { targetDoseKradSi, drivingPartId } = targetOf(input);
   const solutions: ThicknessSolution[] = [];
@@ -225,7 +225,14 @@ function targetOf({ target }: ThicknessInput): { targetDoseKradSi: number; drivi
   return { targetDoseKradSi, drivingPartId };
 }
 
-function check(input: ThicknessInput): void {
+/**
+ * Checks a request before anything is computed; of the trajectories it needs the ids only.
+ *
+ * @throws {AppError} ASSESSMENT_INVALID naming the field
+ */
+export function checkThickness(
+  input: Omit<ThicknessInput, 'trajectories'> & { readonly trajectories: readonly { readonly trajectoryId: string }[] },
+): void {
   const refuse = (pointer: string, detail: string, got: string | number): never => {
     throw new AppError('ASSESSMENT_INVALID', `${pointer}: ${detail}; got ${got}.`, [{ pointer, detail, got }]);
   };

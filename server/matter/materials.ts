@@ -31,12 +31,15 @@ export function materials(): readonly Material[] {
   return [...MATERIALS.values()];
 }
 
-/** @throws {AppError} MATERIAL_UNKNOWN */
-export function material(id: string): Material {
+/**
+ * @param pointer - JSON pointer of the id in a request, for the place of a refusal
+ * @throws {AppError} MATERIAL_UNKNOWN
+ */
+export function material(id: string, pointer?: string): Material {
   const found = MATERIALS.get(id);
   if (found !== undefined) return found;
   throw new AppError('MATERIAL_UNKNOWN', `Material "${id}" is not known; GET /api/materials lists ${MATERIALS.size}.`, [
-    { field: 'materialId', detail: 'not in the list', got: id },
+    { ...(pointer === undefined ? {} : { pointer }), field: 'materialId', detail: 'not in the list', got: id },
   ]);
 }
 

@@ -75,7 +75,7 @@ export function normaliseStack(input: StackInput, pointer = '#'): Stack {
 }
 
 function normaliseLayer(layer: LayerInput, pointer: string, places: ErrorPlace[]): Layer | null {
-  const of = material(layer.materialId);
+  const of = material(layer.materialId, `${pointer}/materialId`);
   const given = (['thicknessMm', 'thicknessMil', 'arealDensityGPerCm2'] as const).filter(
     (key) => layer[key] !== undefined,
   );

@@ -72,6 +72,14 @@ describe('jobs', () => {
       }),
     );
     expect(hashes[0]).toBe(hashes[1]);
+    const { body: compared } = await request(service.app).get(
+      `/api/assessments/${again.body.id}/compare?with=${first.body.id}`,
+    );
+    expect(compared).toMatchObject({ sameResult: true, inputs: [], settings: [], verdicts: [] });
+    expect(compared.doses.map((row: { ratio: number }) => row.ratio)).toEqual([1]);
+    expect(compared.margins).toHaveLength(1);
+    const unfinished = await request(service.app).get(`/api/assessments/${again.body.id}/compare?with=none`);
+    expect(unfinished.body.code).toBe('NOT_FOUND');
   }, 120_000);
 
   it('writes the numbers of the result into its table, with formulas made harmless', async () => {
