@@ -1,5 +1,6 @@
 import type { ExposureSummary } from '../server/fluence/summary.ts';
 import type { AssessmentResult } from '../server/margin/result.ts';
+import type { ThicknessResult, ThicknessSolution } from '../server/margin/thickness.ts';
 
 /** Typed calls of the service. Only types come from the server; nothing is computed here. */
 export interface ProblemPlace {
@@ -62,8 +63,12 @@ export interface StackItem {
   readonly id: string;
   readonly name: string;
   readonly geometry: string;
+  readonly innerRadiusMm?: number;
+  readonly backing?: string;
   readonly text: string;
   readonly arealDensityGPerCm2: number;
+  /** As entered: one of three units each. */
+  readonly layers: readonly Readonly<Record<string, string | number>>[];
   readonly layersShown: readonly {
     readonly materialId: string;
     readonly materialName: string;
@@ -116,6 +121,18 @@ export interface ExposureState {
   readonly progress: number;
   readonly problem: { readonly title: string; readonly detail: string } | null;
   readonly summary: ExposureSummary | null;
+}
+
+export interface ThicknessState {
+  readonly state: AssessmentItem['state'];
+  readonly progress: number;
+  readonly message: string;
+  readonly problem: { readonly title: string; readonly detail: string } | null;
+  readonly result:
+    | (Omit<ThicknessResult, 'solutions'> & {
+        readonly solutions: readonly (ThicknessSolution & { readonly stackText: string })[];
+      })
+    | null;
 }
 
 export interface ReportItem {

@@ -3,6 +3,7 @@ import { three } from '../../server/figures/index.ts';
 import { all, call, type MaterialItem, type OptionItem, type StackItem } from '../api.ts';
 import { Empty, ProblemBox, useLoaded } from '../parts.tsx';
 import { studyId } from '../state.ts';
+import { Solver } from './solver.tsx';
 
 type Unit = 'thicknessMm' | 'thicknessMil' | 'arealDensityGPerCm2';
 const UNITS: readonly (readonly [Unit, string])[] = [
@@ -78,6 +79,7 @@ export function ShieldingPage() {
         ))}
       </div>
       {materials.value !== null && <StackForm materials={materials.value} onMade={stacks.again} />}
+      {stacks.value !== null && stacks.value.length > 0 && <Solver stacks={stacks.value} onMade={stacks.again} />}
     </>
   );
 }
