@@ -9,6 +9,7 @@ import { jobRoutes } from './api/jobs.ts';
 import { DOCUMENTATION_CSS, documentationPage, openApiDocument } from './api/openapi.ts';
 import { problemOf } from './api/problem.ts';
 import { reportRoutes } from './api/reports.ts';
+import { responseRoutes } from './api/responses.ts';
 import { mountRoutes } from './api/routes.ts';
 import type { Shop } from './api/shop.ts';
 import { studyRoutes } from './api/studyRoutes.ts';
@@ -55,6 +56,7 @@ export function createApp(shop: Shop, config: Config, log: Logger, client?: expr
     ...assessmentRoutes(shop),
     ...comparisonRoutes(shop),
     ...thicknessRoutes(shop),
+    ...responseRoutes(shop),
     ...reportRoutes(shop),
     ...jobRoutes(shop),
   ];

@@ -74,6 +74,12 @@ export const shieldSchema = z.discriminatedUnion('kind', [
   }),
 ]);
 
+export const responseBody = z.object({
+  effort: z.enum(['standard', 'fine']).default('standard'),
+  targetMaterialId: z.enum(['Si', 'SiO2', 'GaAs']).default('Si'),
+});
+export const shieldResponseBody = responseBody.extend({ shield: shieldSchema });
+
 export const optionBody = z.object({
   studyId: id,
   name,
