@@ -2,9 +2,13 @@ import type { AssessmentResult } from '../margin/index.ts';
 
 /**
  * One row per part × case × option, with the dose at its place: the numbers of the JSON result, unrounded, units in the
- * column names. Cells that a spreadsheet would take for a formula are quoted with a leading apostrophe.
+ * column names; columns without one are names, ratios, shares and probabilities. The last columns are those of the other
+ * sources, one each. Cells that a spreadsheet would take for a formula are quoted with a leading apostrophe.
  */
 export function resultCsv(result: AssessmentResult): string {
+  const targets = [
+    ...new Set(result.shieldDose.flatMap((row) => row.otherTargets.map(({ targetMaterialId }) => targetMaterialId))),
+  ];
   const header = [
     'case',
     'option',
@@ -32,6 +36,19 @@ export function resultCsv(result: AssessmentResult): string {
     'probabilityAboveRequired',
     'verdict',
     'reason',
+    'peakDoseRate_radSiPerS',
+    'peakDoseRate_utc',
+    'damageElectron_MeVPerG',
+    'damageProton_MeVPerG',
+    'damageTotal_MeVPerG',
+    'neutron1MeVEquivalent_perCm2',
+    'electronCurrentPeak_pAPerCm2',
+    'electronCurrentPeak_utc',
+    'electronFluence10h_perCm2',
+    'electronCurrentFlag',
+    'electronFluenceFlag',
+    ...targets.map((target) => `doseNominal${target}_krad${target}`),
+    ...result.otherSources.map(({ name, phase }) => `otherSource ${name} (${phase})_kradSi`),
   ];
   const nameOf = (rows: readonly { readonly name: string }[], key: string, id: string) =>
     rows.find((row) => (row as unknown as Record<string, unknown>)[key] === id)?.name ?? id;
@@ -69,6 +86,23 @@ export function resultCsv(result: AssessmentResult): string {
       margin.confidence,
       margin.verdict,
       margin.reason,
+      dose?.peakDoseRate?.radSiPerS ?? null,
+      dose?.peakDoseRate?.utc ?? null,
+      dose?.damage?.electronMeVPerG ?? null,
+      dose?.damage?.protonMeVPerG ?? null,
+      dose?.damage?.totalMeVPerG ?? null,
+      dose?.damage?.neutronEquivalentPerCm2 ?? null,
+      dose?.charging?.peakCurrentPaPerCm2 ?? null,
+      dose?.charging?.peakUtc ?? null,
+      dose?.charging?.fluence10hPerCm2 ?? null,
+      dose?.charging?.currentFlag ?? null,
+      dose?.charging?.fluenceFlag ?? null,
+      ...targets.map(
+        (target) => dose?.otherTargets.find((row) => row.targetMaterialId === target)?.doseKrad.total ?? null,
+      ),
+      ...result.otherSources.map(
+        ({ name, phase }) => dose?.bySource.find((row) => row.name === name && row.phase === phase)?.doseKradSi ?? null,
+      ),
     ];
   });
   return `${[header, ...rows].map((row) => row.map(cell).join(',')).join('\r\n')}\r\n`;

@@ -1,3 +1,4 @@
+import { besideDose, otherSources } from './besideSections.ts';
 import { changes } from './changeSection.ts';
 import {
   assumptions,
@@ -26,7 +27,9 @@ export const SECTIONS: readonly Section[] = [
   method,
   doseDepth,
   doses,
+  otherSources,
   margins,
+  besideDose,
   comparison,
   sensitivity,
   exclusions,

@@ -1,5 +1,6 @@
 /** A small assessment result for the report, from the real margin room on an artefact of our own making. */
 import { aluminiumDoseDepth } from '../../../server/dose/aluminium.ts';
+import { kingEventExample } from '../../../server/dose/index.ts';
 import type { FluenceArtefact } from '../../../server/fluence/index.ts';
 import { type AssessmentResult, assess } from '../../../server/margin/index.ts';
 import { ELECTRON_EDGES_MEV, PROTON_EDGES_MEV } from '../../../server/numeric/spectrumGrid.ts';
@@ -95,7 +96,10 @@ export function smallResult(thicker = 0): AssessmentResult {
       capabilityKradSi: 1 + 3 * i,
       capabilityBasis: 'test' as const,
     })),
-    otherSources: [],
+    otherSources: [
+      { name: 'Radioisotope unit', source: 'Invented for this test', phase: 'all', doseKradSi: 0.7 },
+      kingEventExample(1, 'cruise'),
+    ],
     sampling: { draws: 200, seed: 1 },
     doseDepthTables: [table],
     runtime: { engineVersion: 'test', nodeVersion: 'test', architecture: 'test' },

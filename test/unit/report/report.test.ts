@@ -41,6 +41,20 @@ describe('report', () => {
       expect(flat).toContain(three(row.band!.p95));
     }
     for (const row of input.result.margins) expect(flat).toContain(three(row.achievedRdmP95));
+    for (const { doseKradSi, bySource, damage } of input.result.shieldDose) {
+      expect(bySource.map(({ name }) => name)).toEqual(input.result.otherSources.map(({ name }) => name));
+      expect(doseKradSi!.other).toBeCloseTo(
+        bySource.reduce((sum, one) => sum + one.doseKradSi, 0),
+        12,
+      );
+      for (const one of bySource) expect(flat).toContain(three(one.doseKradSi));
+      expect(flat).toContain(three(damage!.totalMeVPerG));
+      expect(flat).toContain(three(damage!.neutronEquivalentPerCm2));
+    }
+    for (const { name, phase } of input.result.otherSources) {
+      expect(flat).toContain(name.slice(0, 16));
+      expect(flat).toContain(phase);
+    }
     for (const note of CAUTIONS) expect(flat).toContain(note.slice(0, 30));
     expect(flat).toContain(input.result.provenance.resultSha256);
     expect(flat).not.toContain('�');
