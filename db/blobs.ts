@@ -6,7 +6,7 @@ import type { Readable } from 'node:stream';
 
 /** Originals and large arrays: files named by their content, written beside, synced, then renamed: never half there. */
 export class Blobs {
-  private readonly directory: string;
+  readonly directory: string;
 
   constructor(dataDir: string) {
     this.directory = join(dataDir, 'blobs');

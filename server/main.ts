@@ -3,6 +3,7 @@ import { fileURLToPath } from 'node:url';
 import type express from 'express';
 import { pino } from 'pino';
 import { openStore } from '../db/open.ts';
+import { sweepBlobs } from '../db/sweep.ts';
 import { Shop } from './api/shop.ts';
 import { createApp } from './app.ts';
 import { builtClient } from './clientPages.ts';
@@ -17,6 +18,8 @@ async function main(): Promise<void> {
   const pool = new Pool();
   const store = openStore(config.dataDir);
   const shop = new Shop(store, config.dataDir, pool, (error) => log.error({ err: error }, 'job failed'));
+  const swept = sweepBlobs(store, shop.blobs);
+  if (swept.removed > 0) log.info(swept, 'removed files that nothing refers to');
   const app = createApp(shop, config, log, process.argv.includes('--dev') ? await devClient() : builtClient());
   const server = createServer(app);
   server.listen(config.port, config.host, async () => {

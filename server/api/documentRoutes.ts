@@ -17,6 +17,8 @@ export interface DocumentKind<T extends object, B> {
   /** More fields for one item on the wire. */
   readonly shown?: (document: StoredDocument<T>) => Record<string, unknown>;
   readonly readOnly?: boolean;
+  /** Refuses the deletion of something that is still in use. */
+  readonly beforeDelete?: (id: string) => void;
 }
 
 /** The calls every collection has: list, make, read, change (ETag and If-Match), delete. */
@@ -55,6 +57,7 @@ export function documentRoutes<T extends object, B>(kind: DocumentKind<T, B>): R
       tag,
       summary: `Delete one ${singular}`,
       handler: ({ params, response }) => {
+        kind.beforeDelete?.(params.id);
         found(documents.delete(params.id) || undefined, singular, params.id);
         response.status(204).end();
       },

@@ -44,6 +44,7 @@ export function trajectoryRoutes(shop: Shop, maxUploadBytes: number): Route[] {
     toBody: () => ({ name: '', studyId: null, body: {} as TrajectoryBody }),
     shown: (document) => ({ ...document.body.summary, summary: undefined, request: undefined }),
     readOnly: true,
+    beforeDelete: (id) => refuseWhileFlown(shop, id),
   });
   return [
     ...listed,
@@ -182,6 +183,24 @@ function sketchRoutes(shop: Shop, shown: (document: ReturnType<Shop['trajectorie
       },
     }),
   ];
+}
+
+/** @throws {AppError} CONFLICT naming the cases that fly the trajectory */
+function refuseWhileFlown(shop: Shop, trajectoryId: string): void {
+  const studyId = shop.trajectories.get(trajectoryId)?.studyId ?? null;
+  const users: { readonly id: string; readonly name: string }[] = [];
+  let cursor: string | null = null;
+  do {
+    const page: ReturnType<typeof shop.cases.list> = shop.cases.list(studyId, 500, cursor);
+    users.push(...page.items.filter(({ body }) => body.legs.some((leg) => leg.trajectoryId === trajectoryId)));
+    cursor = page.nextCursor;
+  } while (cursor !== null);
+  if (users.length === 0) return;
+  throw new AppError(
+    'CONFLICT',
+    `This trajectory is flown by ${users.map(({ name }) => `"${name}"`).join(', ')}; delete those cases or take it out of them first.`,
+    users.map(({ id, name }) => ({ field: 'caseId', detail: `the case "${name}" flies it`, got: id })),
+  );
 }
 
 function blobInUse(shop: Shop, sha256: string): boolean {
