@@ -102,6 +102,22 @@ export interface PartItem {
   readonly requiredRdm?: number;
 }
 
+/** A source besides the belts, as an assessment takes it. */
+export interface OtherSourceItem {
+  readonly name: string;
+  readonly source: string;
+  readonly phase: string;
+  readonly doseKradSi?: number;
+  readonly doseDepth?: { readonly depthsMm: readonly number[]; readonly doseKradSi: readonly number[] };
+  readonly fluence?: {
+    readonly species: 'electron' | 'proton';
+    readonly energiesMeV: readonly number[];
+    readonly differentialPerCm2MeV?: readonly number[];
+    readonly integralPerCm2?: readonly number[];
+    readonly example?: boolean;
+  };
+}
+
 export interface AssessmentItem {
   readonly id: string;
   readonly name: string;

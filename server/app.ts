@@ -7,6 +7,7 @@ import { comparisonRoutes } from './api/comparison.ts';
 import { exposureRoutes } from './api/exposures.ts';
 import { jobRoutes } from './api/jobs.ts';
 import { DOCUMENTATION_CSS, documentationPage, openApiDocument } from './api/openapi.ts';
+import { otherSourceRoutes } from './api/otherSources.ts';
 import { problemOf } from './api/problem.ts';
 import { reportRoutes } from './api/reports.ts';
 import { responseRoutes } from './api/responses.ts';
@@ -55,6 +56,7 @@ export function createApp(shop: Shop, config: Config, log: Logger, client?: expr
     ...exposureRoutes(shop),
     ...assessmentRoutes(shop),
     ...comparisonRoutes(shop),
+    ...otherSourceRoutes(),
     ...thicknessRoutes(shop),
     ...responseRoutes(shop),
     ...reportRoutes(shop),

@@ -1,11 +1,21 @@
 import { useEffect, useState } from 'preact/hooks';
 import { doseDepthScene, marginScene, massScene, percent, phaseScene, three } from '../../server/figures/index.ts';
 import type { AssessmentResult, Verdict } from '../../server/margin/result.ts';
-import { type AssessmentDetail, type AssessmentItem, all, type CaseItem, call, type OptionItem } from '../api.ts';
+import {
+  type AssessmentDetail,
+  type AssessmentItem,
+  all,
+  type CaseItem,
+  call,
+  type OptionItem,
+  type OtherSourceItem,
+} from '../api.ts';
 import { Figure } from '../figure.tsx';
 import { Empty, Link, ProblemBox, Progress, useLoaded, VerdictTag } from '../parts.tsx';
 import { go, route, studyId } from '../state.ts';
+import { BesideDose } from './beside.tsx';
 import { Comparison } from './comparison.tsx';
+import { OtherSources } from './otherSources.tsx';
 
 export function MarginsPage() {
   const study = studyId.value!;
@@ -36,6 +46,7 @@ function NewAssessment({ onMade }: { onMade: () => void }) {
   const cases = useLoaded(() => all<CaseItem>(`/api/cases?studyId=${study}`), study);
   const options = useLoaded(() => all<OptionItem>(`/api/options?studyId=${study}`), study);
   const [error, setError] = useState<unknown>(null);
+  const [otherSources, setOtherSources] = useState<readonly OtherSourceItem[]>([]);
   const start = async (event: SubmitEvent & { currentTarget: HTMLFormElement }) => {
     event.preventDefault();
     const data = new FormData(event.currentTarget);
@@ -47,6 +58,8 @@ function NewAssessment({ onMade }: { onMade: () => void }) {
         name: data.get('name'),
         caseIds: picked('case', cases.value),
         optionIds: picked('option', options.value),
+        otherSources,
+        otherTargetMaterialIds: ['SiO2', 'GaAs'].filter((target) => data.get(target) !== null),
       });
       setError(null);
       onMade();
@@ -78,11 +91,21 @@ function NewAssessment({ onMade }: { onMade: () => void }) {
             </label>
           ))}
         </fieldset>
+        <fieldset>
+          <legend>Dose also in</legend>
+          <label class="check">
+            <input type="checkbox" name="SiO2" /> SiO₂
+          </label>
+          <label class="check">
+            <input type="checkbox" name="GaAs" /> GaAs
+          </label>
+        </fieldset>
         <button type="submit" class="primary">
           Assess
         </button>
         <ProblemBox error={error} />
       </form>
+      <OtherSources value={otherSources} onChange={setOtherSources} />
     </details>
   );
 }
@@ -273,6 +296,7 @@ function Result({ id, result }: { id: string; result: AssessmentResult }) {
           ))}
         </tbody>
       </table>
+      <BesideDose result={result} caseId={caseId} />
       <h2>Options side by side</h2>
       <div class="columns">
         {places.map((placeId) => {

@@ -72,10 +72,13 @@ describe('thickness for a target', () => {
     const part = await request(service.app)
       .post('/api/parts')
       .send({ studyId, partId: 'P', name: 'Part', placeId: 'all', capabilityKradSi: 1e4, capabilityBasis: 'test' });
+    const example = await request(service.app).get('/api/other-sources/king-1974?scale=2&phase=cruise');
+    expect(example.body).toMatchObject({ phase: 'cruise', fluence: { species: 'proton', example: true } });
     const made = await request(service.app)
       .post('/api/thickness/jobs')
       .send({
         ...asked,
+        otherSources: [example.body],
         partIds: [part.body.id],
         requiredRdm: 2,
         percentile: 95,
