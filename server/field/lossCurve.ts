@@ -1,4 +1,5 @@
 import { PLANETS } from '../constants/planets.ts';
+import { readReferenceJson } from '../constants/reference.ts';
 import { makeLineSegment, SegmentTracer } from './tracer.ts';
 import type { FieldModel } from './types.ts';
 
@@ -13,6 +14,10 @@ import type { FieldModel } from './types.ts';
  * Multipole fields have a second family of lines: short ones that hug the surface round its weakest spot, where |B| is
  * small and L, by its definition, large. Particles do not drift between the two families, so surface points count only
  * when their bounce path reaches out to APEX_SHARE of L, as every line of a shell round the offset dipole does.
+ *
+ * Where lines of one shell split, their mirror points dip in slivers narrower than the grid, and the surface's own shells miss
+ * it: by half and more under O8 at L 2 to 6, by up to a tenth under AH5. For these fields shells were traced whole ahead
+ * (db/reference/loss-curves), and the lower of the two curves holds.
  *
  * Surface: the 1-bar ellipsoid raised by the loss altitude. Contours of L are followed across the edges of a
  * latitude-longitude grid; the table is then exact to the grid (2°): about 1 % in B_loss.
@@ -47,7 +52,7 @@ const cache = new Map<FieldModel, LossCurve>();
 export function lossCurve(model: FieldModel): LossCurve {
   let curve = cache.get(model);
   if (curve === undefined) {
-    curve = buildLossCurve(model, LOSS_ALTITUDE_KM);
+    curve = withWholeShells(model.id, buildLossCurve(model, LOSS_ALTITUDE_KM));
     cache.set(model, curve);
   }
   return curve;
@@ -81,6 +86,33 @@ export function buildLossCurve(model: FieldModel, altitudeKm: number): LossCurve
   }
   fillGaps(bLossNt);
   return { altitudeKm, lnL, bLossNt };
+}
+
+interface WholeShells {
+  readonly lShell: readonly number[];
+  readonly bLossNt: readonly number[];
+}
+
+const WHOLE_SHELLS: Readonly<Record<string, string>> = {
+  'neptune-o8': 'neptune-o8.json',
+  'uranus-ah5': 'uranus-ah5.json',
+};
+
+/** The lower of the surface's curve and that of whole shells, linear in ln L between the latter's values. */
+function withWholeShells(modelId: string, curve: LossCurve): LossCurve {
+  const file = WHOLE_SHELLS[modelId];
+  if (file === undefined) return curve;
+  const { lShell, bLossNt } = readReferenceJson<WholeShells>('loss-curves', file);
+  const last = lShell.length - 1;
+  const lower = curve.bLossNt.map((surface, i) => {
+    const l = Math.exp(curve.lnL[i]);
+    if (l < lShell[0] || l > lShell[last]) return surface;
+    let k = 0;
+    while (k < last - 1 && lShell[k + 1] <= l) k += 1;
+    const share = Math.log(l / lShell[k]) / Math.log(lShell[k + 1] / lShell[k]);
+    return Math.min(surface, bLossNt[k] + share * (bLossNt[k + 1] - bLossNt[k]));
+  });
+  return { ...curve, bLossNt: lower };
 }
 
 /** B_loss at an L, nT, linear in ln L between the nodes. */

@@ -82,7 +82,7 @@ export const DEFAULT_GRID: FieldMapGrid = {
 };
 
 /** Raise whenever the meaning of the nodes, the choice of cells or B_loss(L) changes: older maps are then no longer used. */
-const MAP_VERSION = 2;
+const MAP_VERSION = 3;
 const PROBES = 24;
 
 export function nodeCount(grid: FieldMapGrid): number {
