@@ -2,14 +2,9 @@ import { readdirSync, statSync } from 'node:fs';
 import type { Blobs } from './blobs.ts';
 import type { Store } from './open.ts';
 
-/** Every column that may name a blob. Results of jobs count only while what they were made for is still there. */
-const REFERENCES = [
-  'SELECT blobSha256 AS text FROM trajectories',
-  'SELECT blobSha256 AS text FROM artefacts',
-  'SELECT body AS text FROM assessments',
-  'SELECT body AS text FROM reports',
-  "SELECT input || coalesce(result, '') AS text FROM jobs WHERE kind <> 'assessment' OR subjectId IN (SELECT id FROM assessments)",
-] as const;
+/** Results of jobs count only while what they were made for is still there. */
+const OF_JOBS =
+  "SELECT input, result FROM jobs WHERE kind <> 'assessment' OR subjectId IN (SELECT id FROM assessments)";
 
 /** A blob just written may belong to a row that is about to be. */
 const YOUNG_MS = 60_000;
@@ -22,9 +17,17 @@ const YOUNG_MS = 60_000;
  */
 export function sweepBlobs(store: Store, blobs: Blobs, now = Date.now()): { removed: number; bytes: number } {
   const named = new Set<string>();
-  for (const sql of REFERENCES) {
-    for (const row of store.prepare(sql).iterate() as IterableIterator<{ text: string }>) {
-      for (const [sha256] of row.text.matchAll(/[0-9a-f]{64}/g)) named.add(sha256);
+  const tables = store
+    .prepare("SELECT name FROM sqlite_schema WHERE type = 'table' AND name <> 'jobs' AND name NOT LIKE 'sqlite_%'")
+    .pluck()
+    .all() as string[];
+  // A row of any table, in any column, keeps what it names: a table added later cannot be forgotten here.
+  for (const sql of [...tables.map((table) => `SELECT * FROM "${table}"`), OF_JOBS]) {
+    for (const row of store.prepare(sql).raw().iterate() as IterableIterator<unknown[]>) {
+      for (const value of row) {
+        if (typeof value !== 'string') continue;
+        for (const [sha256] of value.matchAll(/[0-9a-f]{64}/g)) named.add(sha256);
+      }
     }
   }
   let removed = 0;

@@ -11,6 +11,7 @@ import { otherSourceRoutes } from './api/otherSources.ts';
 import { problemOf } from './api/problem.ts';
 import { reportRoutes } from './api/reports.ts';
 import { responseRoutes } from './api/responses.ts';
+import { schemaRoutes } from './api/resultSchema.ts';
 import { mountRoutes } from './api/routes.ts';
 import type { Shop } from './api/shop.ts';
 import { studyRoutes } from './api/studyRoutes.ts';
@@ -57,6 +58,7 @@ export function createApp(shop: Shop, config: Config, log: Logger, client?: expr
     ...assessmentRoutes(shop),
     ...comparisonRoutes(shop),
     ...otherSourceRoutes(),
+    ...schemaRoutes(),
     ...thicknessRoutes(shop),
     ...responseRoutes(shop),
     ...reportRoutes(shop),

@@ -21,7 +21,7 @@ export { CAPABILITY_BASES, checkParts, preparePart } from './parts.ts';
 export { formatPartsCsv, PART_COLUMNS, parsePartsCsv } from './partsCsv.ts';
 export { resultHash } from './provenance.ts';
 export type * from './result.ts';
-export { VERDICTS } from './result.ts';
+export { RESULT_SCHEMA, VERDICTS } from './result.ts';
 export { scaleShield, THICKER_FACTOR, THINNER_FACTOR } from './scaleShield.ts';
 export {
   checkThickness,

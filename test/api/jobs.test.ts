@@ -1,6 +1,7 @@
 import { readFileSync } from 'node:fs';
 import request from 'supertest';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { assessmentResultSchema } from '../../server/api/resultSchema.ts';
 import { startService, type TestService } from './service.ts';
 
 const CANCEL_LIMIT_MS = 1000;
@@ -86,6 +87,8 @@ describe('jobs', () => {
     const { items } = (await request(service.app).get('/api/assessments')).body;
     const done = items.find((item: { state: string }) => item.state === 'done');
     const { result } = (await request(service.app).get(`/api/assessments/${done.id}`)).body;
+    // What the schema does not describe is stripped by it: nothing may be missing.
+    expect(assessmentResultSchema.parse(result)).toEqual(result);
     const { text } = await request(service.app).get(`/api/assessments/${done.id}/table.csv`);
     expect(text).toContain(String(result.shieldDose[0].doseKradSi.total));
     const [{ doseKradSi, otherTargets }] = result.shieldDose;
