@@ -179,6 +179,16 @@ export const ERROR_CODES = {
     title: 'Unknown belt model',
     help: 'The belt model id is neither built in nor an uploaded belt table (GET /api/belt-models), or it is for the other planet.',
   },
+  BELT_TABLE_INVALID: {
+    status: 422,
+    title: 'Belt table refused',
+    help: 'A belt table has, per species, ascending axes of L, equatorial pitch angle (ending at 90 degrees) and energy, and one differential unidirectional flux for each of their nodes, 0 to 1e15 cm^-2 s^-1 sr^-1 MeV^-1. The error names the field with its row and the limit.',
+  },
+  BELT_OPTION_REFUSED: {
+    status: 422,
+    title: 'Option does not apply to a belt table',
+    help: 'Satellite dips, the proton upper bound and the long-term mean are scenarios of the built-in belts. An uploaded belt table is used as it is.',
+  },
   // --- fluence
   ROTATION_MODEL_UNKNOWN: {
     status: 422,

@@ -1,6 +1,6 @@
 import { contentHash } from '../canonical.ts';
 import { type FieldModelId, fieldLabeller, fieldModel, type MagneticLabeller } from '../field/index.ts';
-import { type BeltModel, beltModel, LONG_TERM_MEAN_OFFSET_DEX } from '../flux/index.ts';
+import { type BeltModel, beltModel, kennelPetschekRatio, LONG_TERM_MEAN_OFFSET_DEX } from '../flux/index.ts';
 import { ELECTRON_EDGES_MEV, PROTON_EDGES_MEV } from '../numeric/spectrumGrid.ts';
 import type { Path } from '../trajectory/path.ts';
 import { ENGINE_VERSION } from '../version.ts';
@@ -8,9 +8,10 @@ import { type FollowOptions, followPass, type PathSample } from './followPass.ts
 import { fluxHistory } from './history.ts';
 import { binRegions, binSpread, energySigma, lBinEdges, lBinOf } from './lBins.ts';
 import { findPasses, type Pass } from './passes.ts';
-import { type ExposureSummary, summarise } from './summary.ts';
+import type { FluenceSampling } from './percentiles.ts';
+import { type ExposureSummary, summarise, type Thresholds } from './summary.ts';
 import type { EnvironmentChoice, ExposureVariant, FluenceArtefact } from './types.ts';
-import { exposureVariants, rotationModelFor } from './variants.ts';
+import { exposureVariants, refuseOtherPlanet, rotationModelFor } from './variants.ts';
 
 const N_ELECTRON = ELECTRON_EDGES_MEV.length;
 const N_PROTON = PROTON_EDGES_MEV.length;
@@ -25,7 +26,11 @@ export interface ExposureOptions extends FollowOptions {
   readonly onProgress?: (share: number) => void;
   readonly signal?: AbortSignal;
   /** Thresholds of the integral fluxes in the summary, MeV. */
-  readonly thresholdsMeV?: readonly number[];
+  readonly thresholdsMeV?: Thresholds;
+  /** Draws of the percentiles in the summary. */
+  readonly sampling?: FluenceSampling;
+  /** Field models to follow the same path in at the nominal phase, for comparison only. */
+  readonly compareFieldModelIds?: readonly FieldModelId[];
 }
 
 export interface Exposure {
@@ -109,6 +114,12 @@ export function computeExposure(path: Path, environment: EnvironmentChoice, opti
   const nominalVariant = nominalIndex(rows, environment);
   // Samples of all variants would fill the memory; the nominal one is followed once more instead.
   const nominalSamples = samplesOf(rows[nominalVariant].variant);
+  const compared = (options.compareFieldModelIds ?? []).map((id) => {
+    refuseOtherPlanet(id, path.planet, 'compareFieldModelIds');
+    const variant = { ...rows[nominalVariant].variant, fieldModelId: id, weight: 0, primary: false };
+    const { electron, proton } = accumulate(variant, samplesOf(variant), passes, groups.length, lEdges);
+    return { fieldModelId: id, electron: summedRows(electron, N_ELECTRON), proton: summedRows(proton, N_PROTON) };
+  });
   const mapKeys: Partial<Record<FieldModelId, string>> = {};
   for (const [id, { mapKey }] of labellers) if (mapKey !== undefined) mapKeys[id] = mapKey;
   const artefact: FluenceArtefact = {
@@ -124,11 +135,14 @@ export function computeExposure(path: Path, environment: EnvironmentChoice, opti
     electron: concatenate(rows.map((row) => row.electron)),
     proton: concatenate(rows.map((row) => row.proton)),
     regions: { electron: binRegions(belts, 'electron', lEdges), proton: binRegions(belts, 'proton', lEdges) },
+    kennelPetschekRatio: Float64Array.from({ length: lEdges.length - 1 }, (_, bin) =>
+      kennelPetschekRatio(belts, path.planet, Math.sqrt(lEdges[bin] * lEdges[bin + 1])),
+    ),
     history: fluxHistory(nominalSamples),
   };
   return {
     artefact,
-    summary: summarise(artefact, environment, rotation, nominalSamples, options.thresholdsMeV),
+    summary: summarise(artefact, environment, rotation, nominalSamples, compared, options),
   };
 }
 
@@ -168,6 +182,13 @@ function accumulate(
     proton: Float32Array.from(proton),
     ranking: rankingFluence(electron),
   };
+}
+
+/** All groups and L together, cm⁻² MeV⁻¹ at the edges of the grid. */
+function summedRows(rows: Float32Array, nEdges: number): Float64Array {
+  const out = new Float64Array(nEdges);
+  for (let i = 0; i < rows.length; i++) out[i % nEdges] += rows[i];
+  return out;
 }
 
 /** Electron fluence above RANKING_THRESHOLD_MEV over all groups and L, cm⁻². */

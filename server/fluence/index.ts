@@ -7,6 +7,7 @@ export {
   exposureKey,
   RANKING_THRESHOLD_MEV,
 } from './exposure.ts';
+export { type FluenceBand, type FluencePercentiles, TIME_SIGMA_DEX } from './percentiles.ts';
 export { integralFluence, variantEdges } from './spectra.ts';
 export { DEFAULT_THRESHOLDS_MEV, type ExposureSummary, type SpeciesSummary } from './summary.ts';
 export type { EnvironmentChoice, ExposureVariant, FluenceArtefact, FluxHistory, PhaseMode } from './types.ts';

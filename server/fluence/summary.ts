@@ -4,11 +4,15 @@ import { binIntegralsInto, edgesMeV, type Species } from '../numeric/spectrumGri
 import { formatUtc } from '../time/index.ts';
 import type { PathSample } from './followPass.ts';
 import { thinned } from './history.ts';
+import { type FluencePercentiles, type FluenceSampling, fluencePercentiles } from './percentiles.ts';
 import { integralFluence, variantEdges } from './spectra.ts';
 import type { EnvironmentChoice, FluenceArtefact } from './types.ts';
 
 export const DEFAULT_THRESHOLDS_MEV: readonly number[] = [0.1, 0.5, 1, 2, 5, 10];
 const HISTORY_POINTS = 1000;
+const DEFAULT_SAMPLING: FluenceSampling = { draws: 1000, seed: 1 };
+
+export type Thresholds = Readonly<Partial<Record<Species, readonly number[]>>>;
 
 /** What people read of an exposure; JSON. Fluences cm⁻², fluxes cm⁻² s⁻¹, omnidirectional. */
 export interface ExposureSummary {
@@ -16,7 +20,17 @@ export interface ExposureSummary {
   readonly beltModelId: string;
   /** 1 σ of the rotation phase at arrival from the model's period error, degrees. */
   readonly phaseSigmaDeg: number;
+  /** Of the electrons; `thresholdsBySpeciesMeV` holds both. */
   readonly thresholdsMeV: readonly number[];
+  readonly thresholdsBySpeciesMeV: Readonly<Record<Species, readonly number[]>>;
+  /** Over belts, rotation phase and field model drawn together. */
+  readonly percentiles: FluencePercentiles;
+  /** The same path and phase in the chosen and in other field models, median belts; per threshold. */
+  readonly fieldComparison: readonly {
+    readonly fieldModelId: string;
+    readonly electronPerCm2: readonly number[];
+    readonly protonPerCm2: readonly number[];
+  }[];
   readonly passCount: number;
   readonly nominal: { readonly fieldModelId: string; readonly offsetDeg: number };
   readonly species: Readonly<Record<Species, SpeciesSummary>>;
@@ -66,13 +80,25 @@ export function summarise(
   environment: EnvironmentChoice,
   rotation: RotationModel,
   passes: readonly (readonly PathSample[])[],
-  thresholdsMeV: readonly number[] = DEFAULT_THRESHOLDS_MEV,
+  compared: readonly {
+    readonly fieldModelId: string;
+    readonly electron: Float64Array;
+    readonly proton: Float64Array;
+  }[],
+  options: { readonly thresholdsMeV?: Thresholds; readonly sampling?: FluenceSampling } = {},
 ): ExposureSummary {
+  const thresholds: Record<Species, readonly number[]> = {
+    electron: options.thresholdsMeV?.electron ?? DEFAULT_THRESHOLDS_MEV,
+    proton: options.thresholdsMeV?.proton ?? DEFAULT_THRESHOLDS_MEV,
+  };
+  const { draws, seed } = options.sampling ?? DEFAULT_SAMPLING;
   const samples = passes.flat();
   const nominal = artefact.variants[artefact.nominalVariant];
+  const integrals = (species: Species, edges: Float64Array) =>
+    thresholds[species].map((threshold) => integralFluence(species, edges, threshold));
   const fluences = (species: Species, variant: number) => {
     const edges = variantEdges(artefact, variant, species);
-    return thresholdsMeV.map((threshold) => integralFluence(species, edges, threshold));
+    return integrals(species, edges);
   };
   const byPhase = artefact.variants.map((variant, index) => ({
     fieldModelId: variant.fieldModelId,
@@ -96,12 +122,28 @@ export function summarise(
     environment,
     beltModelId: artefact.beltModelId,
     phaseSigmaDeg: artefact.groups.length === 0 ? 0 : phaseSigmaDeg(rotation, artefact.groups[0].startTdbS),
-    thresholdsMeV,
+    thresholdsMeV: thresholds.electron,
+    thresholdsBySpeciesMeV: thresholds,
+    percentiles: fluencePercentiles(artefact, thresholds, draws, seed),
+    fieldComparison: [
+      {
+        fieldModelId: nominal.fieldModelId,
+        electronPerCm2: fluences('electron', artefact.nominalVariant),
+        protonPerCm2: fluences('proton', artefact.nominalVariant),
+      },
+      ...compared
+        .filter(({ fieldModelId }) => fieldModelId !== nominal.fieldModelId)
+        .map(({ fieldModelId, electron, proton }) => ({
+          fieldModelId,
+          electronPerCm2: integrals('electron', electron),
+          protonPerCm2: integrals('proton', proton),
+        })),
+    ],
     passCount: passes.length,
     nominal: { fieldModelId: nominal.fieldModelId, offsetDeg: nominal.offsetDeg },
     species: {
-      electron: speciesSummary(artefact, 'electron', samples, thresholdsMeV),
-      proton: speciesSummary(artefact, 'proton', samples, thresholdsMeV),
+      electron: speciesSummary(artefact, 'electron', samples, thresholds.electron),
+      proton: speciesSummary(artefact, 'proton', samples, thresholds.proton),
     },
     byPhase,
     phaseBand: { p05PerCm2: quantile(drawn, 0.05), p50PerCm2: quantile(drawn, 0.5), p95PerCm2: quantile(drawn, 0.95) },
@@ -110,10 +152,10 @@ export function summarise(
       utc: shown.map((sample) => formatUtc(sample.epochTdbS, 0)),
       epochTdbS: shown.map((sample) => sample.epochTdbS),
       lShell: shown.map((sample) => (Number.isFinite(sample.lShell) ? sample.lShell : null)),
-      electronAbovePerCm2S: thresholdsMeV.map((threshold) =>
+      electronAbovePerCm2S: thresholds.electron.map((threshold) =>
         shown.map((sample) => integralFluence('electron', sample.electron, threshold)),
       ),
-      protonAbovePerCm2S: thresholdsMeV.map((threshold) =>
+      protonAbovePerCm2S: thresholds.proton.map((threshold) =>
         shown.map((sample) => integralFluence('proton', sample.proton, threshold)),
       ),
     },

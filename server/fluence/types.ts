@@ -15,6 +15,8 @@ export interface EnvironmentChoice {
   readonly satelliteDips?: boolean;
   readonly protonUpperBound?: boolean;
   readonly solarWindState?: 'as-encountered' | 'long-term-mean';
+  /** Content of the uploaded belt table that `beltModelId` names; absent with built-in belts. */
+  readonly beltTableSha256?: string;
 }
 
 /** One (field model, rotation offset) for which the path was followed. Weights of a set sum to 1. */
@@ -53,6 +55,8 @@ export interface FluenceArtefact {
   readonly proton: Float32Array;
   /** Evidence region per (L bin, energy bin), index bin · nBins + energyBin. */
   readonly regions: Readonly<Record<'electron' | 'proton', readonly EvidenceRegion[]>>;
+  /** Median electrons over the scaled Kennel-Petschek level at each bin's geometric mean L. */
+  readonly kennelPetschekRatio?: Float64Array;
   /** Absent when no time history was kept: peak dose rates and 10 h fluences are then not assessed. */
   readonly history?: FluxHistory;
 }

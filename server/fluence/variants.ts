@@ -111,12 +111,14 @@ function sampledFields(environment: EnvironmentChoice, planet: PlanetId): FieldM
     );
   }
   const further = environment.sampledFieldModelIds ?? (chosen.id === 'uranus-q3' ? (['uranus-ah5'] as const) : []);
-  for (const id of further) {
-    if (fieldModel(id).planet !== planet) {
-      throw new AppError('FIELD_MODEL_UNKNOWN', `Field model "${id}" is not of ${planet}.`, [
-        { field: 'sampledFieldModelIds', detail: 'other planet', got: id },
-      ]);
-    }
-  }
+  for (const id of further) refuseOtherPlanet(id, planet, 'sampledFieldModelIds');
   return [chosen.id, ...further.filter((id) => id !== chosen.id)];
+}
+
+/** @throws {AppError} FIELD_MODEL_UNKNOWN naming the field of the request */
+export function refuseOtherPlanet(id: string, planet: PlanetId, field: string): void {
+  if (fieldModel(id).planet === planet) return;
+  throw new AppError('FIELD_MODEL_UNKNOWN', `Field model "${id}" is not of ${planet}.`, [
+    { field, detail: 'other planet', got: id },
+  ]);
 }

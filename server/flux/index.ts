@@ -6,7 +6,10 @@ import type { BeltOptions } from './parametricModel.ts';
 import type { BeltModel } from './types.ts';
 import { URANUS_BELTS_ID, uranusBelts } from './uranus.ts';
 
+export { KP_MEASURE, kennelPetschekRatio } from './kennelPetschek.ts';
 export type { BeltOptions } from './parametricModel.ts';
+export { tableBelts } from './tableModel.ts';
+export { type BeltTable, checkBeltTable } from './tableTypes.ts';
 export type { BeltModel, BeltSpread, EvidenceRegion } from './types.ts';
 export { EVIDENCE_REGIONS } from './types.ts';
 

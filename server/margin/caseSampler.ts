@@ -9,6 +9,7 @@
  * the belts; the field model at equal odds; the rotation phase per flight or shared, see schedule.ts.
  */
 import type { PlanetId } from '../constants/planets.ts';
+import { TIME_SIGMA_DEX } from '../fluence/percentiles.ts';
 import type { FluenceArtefact } from '../fluence/types.ts';
 import { edgesMeV, type Species } from '../numeric/spectrumGrid.ts';
 import { type BeltDraws, FACTORS_PER_DRAW, FACTORS_PER_SPECIES, type RandomNumbers } from './beltDraws.ts';
@@ -23,8 +24,6 @@ import {
   variantNearest,
 } from './schedule.ts';
 
-/** 1 σ of the time variation of a single pass, decades. */
-export const TIME_SIGMA_DEX = 0.3;
 const LN10 = Math.LN10;
 /** Draws handled together: their spectra stay in the cache while every shield is folded. */
 const BLOCK = 64;

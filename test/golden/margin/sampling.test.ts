@@ -1,6 +1,7 @@
 import { describe, expect, it } from 'vitest';
+import { TIME_SIGMA_DEX } from '../../../server/fluence/percentiles.ts';
 import { randomNumbers } from '../../../server/margin/beltDraws.ts';
-import { makeCaseSampler, type SampledColumn, TIME_SIGMA_DEX } from '../../../server/margin/caseSampler.ts';
+import { makeCaseSampler, type SampledColumn } from '../../../server/margin/caseSampler.ts';
 import { lotCapability, predictivePoints } from '../../../server/margin/lot.ts';
 import { nodeWeights, referenceSpectrum } from '../../../server/margin/nodeWeights.ts';
 import { trajectorySpectra } from '../../../server/margin/nominal.ts';
