@@ -1,15 +1,16 @@
 import type { z } from 'zod';
 import { AppError } from '../errors.ts';
-import { checkParts, formatPartsCsv, type PartInput, parsePartsCsv } from '../margin/index.ts';
+import { checkPart, type PartInput } from '../margin/index.ts';
 import { placeMassKg } from '../shielding/mass.ts';
 import { describeShield, plainStack } from '../shielding/shieldPlan.ts';
 import { describeStack, normaliseStack } from '../shielding/stack.ts';
 import type { ShieldInput, StackInput } from '../shielding/types.ts';
 import { MM_PER_MIL } from '../units.ts';
-import { documentRoutes, sendFile } from './documentRoutes.ts';
-import { defineRoute, type Route } from './routes.ts';
-import { anyObject, caseBody, optionBody, partBody, stackBody, studyBody } from './schemas.ts';
-import { found, onWire, type Shop } from './shop.ts';
+import { documentRoutes } from './documentRoutes.ts';
+import { partsListRoutes } from './partsLists.ts';
+import type { Route } from './routes.ts';
+import { caseBody, optionBody, partBody, stackBody, studyBody } from './schemas.ts';
+import { found, type Shop } from './shop.ts';
 
 /** Studies and what they hold that is entered by hand: cases, stacks, options, parts. */
 export function studyRoutes(shop: Shop): Route[] {
@@ -107,39 +108,11 @@ export function studyRoutes(shop: Shop): Route[] {
       documents: shop.parts,
       schema: partBody,
       toBody: ({ studyId, ...part }) => {
-        checkParts([part as PartInput], '#');
+        checkPart(part as PartInput);
         return { name: part.name, studyId: inStudy(studyId), body: part as PartInput };
       },
     }),
-    defineRoute({
-      method: 'post',
-      path: '/api/studies/{id}/parts.csv',
-      tag: 'parts',
-      summary: 'Add a parts list as CSV; all of it or nothing',
-      rawBody: 'text/csv',
-      answer: anyObject,
-      status: 201,
-      handler: ({ params, request }) => {
-        const studyId = inStudy(params.id);
-        const parts = parsePartsCsv(typeof request.body === 'string' ? request.body : '');
-        checkParts(parts);
-        const items = shop.store.transaction(() =>
-          parts.map((part) => onWire(shop.parts.insert(studyId, part.name, part))),
-        )();
-        return { items };
-      },
-    }),
-    defineRoute({
-      method: 'get',
-      path: '/api/studies/{id}/parts.csv',
-      tag: 'parts',
-      summary: 'The parts of a study as CSV',
-      answerType: 'text/csv',
-      handler: ({ params, response }) => {
-        const parts = shop.parts.list(inStudy(params.id), 1000, null).items.map((document) => document.body);
-        sendFile(response, 'text/csv; charset=utf-8', 'parts.csv', formatPartsCsv(parts));
-      },
-    }),
+    ...partsListRoutes(shop),
   ];
 }
 

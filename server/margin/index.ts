@@ -17,7 +17,7 @@ export type {
   PartInput,
 } from './input.ts';
 export { lotCapability, toleranceFactor, zeroFailureSampleSize } from './lot.ts';
-export { CAPABILITY_BASES, checkParts, preparePart } from './parts.ts';
+export { CAPABILITY_BASES, checkPart, checkParts, preparePart } from './parts.ts';
 export { formatPartsCsv, PART_COLUMNS, parsePartsCsv } from './partsCsv.ts';
 export { resultHash } from './provenance.ts';
 export type * from './result.ts';

@@ -84,6 +84,14 @@ export function partFaults(part: PartInput, place: (field: string) => Partial<Er
   return faults;
 }
 
+/** @throws {AppError} PART_INVALID naming every faulty field of one part by JSON pointer */
+export function checkPart(part: PartInput): void {
+  const faults = partFaults(part, (field) => ({ pointer: `#/${field}` }));
+  if (faults.length > 0) {
+    throw new AppError('PART_INVALID', `${faults[0].pointer}: ${faults[0].detail}.`, faults);
+  }
+}
+
 /**
  * Checks a list of parts.
  *

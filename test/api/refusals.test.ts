@@ -151,6 +151,27 @@ describe('shields and parts', () => {
     await refused(post('/api/parts', part), 422, 'PART_INVALID', /capability/i);
     await refused(post('/api/parts', { ...part, placeId: '', capabilityKradSi: 10 }), 422, 'PART_INVALID', /placeId/);
   });
+  it('names the field of one part, and every part of a JSON list', async () => {
+    const part = { partId: 'P', name: 'Part', placeId: 'deck', capabilityKradSi: 10, capabilityBasis: 'test' };
+    await refused(
+      post('/api/parts', { ...part, studyId, requiredRdm: -1 }),
+      422,
+      'PART_INVALID',
+      /"pointer":"#\/requiredRdm"/,
+    );
+    const path = `/api/studies/${studyId}/parts.json`;
+    const bad = { parts: [part, { ...part, partId: 'Q', capabilityKradSi: 0 }, { ...part, name: '' }] };
+    await refused(post(path, bad), 422, 'PART_INVALID', /#\/parts\/1\/capabilityKradSi.*#\/parts\/2\/name/s);
+    const made = await post(path, { parts: [part] })();
+    expect(made.status).toBe(201);
+    await refused(post(path, { parts: [part] }), 422, 'PART_INVALID', /"pointer":"#\/parts\/0\/partId"/);
+    const again = await post(`${path}?replace=true`, { parts: [{ ...part, capabilityKradSi: 12, requiredRdm: 3 }] })();
+    expect(again.body.items).toEqual([
+      expect.objectContaining({ id: made.body.items[0].id, capabilityKradSi: 12, requiredRdm: 3, version: 2 }),
+    ]);
+    const read = await request(service.app).get(path);
+    expect(read.body).toEqual({ parts: [{ ...part, capabilityKradSi: 12, requiredRdm: 3 }] });
+  });
   it('takes a parts list whole or not at all, naming line and column', () =>
     refused(
       () =>
