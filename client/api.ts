@@ -94,11 +94,16 @@ export interface PartItem {
   readonly id: string;
   readonly partId: string;
   readonly name: string;
+  readonly description?: string;
   readonly technology?: string;
   readonly placeId: string;
   readonly capabilityKradSi?: number;
   readonly capabilityBasis?: string;
+  readonly sampleSize?: number;
+  readonly doseRateRadSiPerS?: number;
   readonly failureDosesKradSi?: readonly number[];
+  readonly lotConfidence?: number;
+  readonly lotProbability?: number;
   readonly requiredRdm?: number;
 }
 
