@@ -148,6 +148,32 @@ describe.skipIf(!READY)('client in a browser', () => {
     expect(await page.getByRole('row', { name: /Thick walls/ }).count()).toBeGreaterThan(0);
   }, 300_000);
 
+  it('adds another source, compares with the assessment before, and keeps a thickness that meets a dose', async () => {
+    await page.goto(`${base}/margins`);
+    await page.getByText('New assessment').click();
+    await page.getByRole('textbox', { name: 'Name', exact: true }).fill('With cruise');
+    await page.getByLabel('Source name').fill('Cruise protons');
+    await page.getByLabel('Citation or origin').fill('Invented for this test');
+    await page.getByLabel('Dose, krad(Si)').fill('1.5');
+    await page.getByRole('button', { name: 'Add this source' }).click();
+    await page.getByRole('button', { name: 'Remove Cruise protons' }).waitFor();
+    await page.getByRole('button', { name: 'Assess', exact: true }).click();
+    await page.getByRole('heading', { name: 'Beside the dose' }).waitFor({ timeout: 120_000 });
+    await page.getByRole('cell', { name: 'Cruise protons' }).first().waitFor();
+    await page.getByLabel('Compare with').selectOption({ index: 1 });
+    await page.getByText('Other source “Cruise protons”: added').waitFor();
+    await page.getByText('Doses that moved most').waitFor();
+    await page.screenshot({ path: join(SHOTS, 'margins-compared.png'), fullPage: true });
+
+    await page.goto(`${base}/shielding`);
+    await page.getByText('Find the thickness for a target').click();
+    await page.getByLabel('Dose at most, krad(Si)').fill('1000000');
+    await page.getByRole('button', { name: 'Find thickness' }).click();
+    await page.getByRole('button', { name: 'Keep Thin as a new stack' }).click({ timeout: 120_000 });
+    await page.getByRole('heading', { name: /^Thin, .* mm for/ }).waitFor();
+    await page.screenshot({ path: join(SHOTS, 'thickness.png'), fullPage: true });
+  }, 300_000);
+
   it('issues a report and downloads it', async () => {
     await page.goto(`${base}/reports`);
     await page.getByRole('button', { name: 'Issue' }).click();
