@@ -1,5 +1,6 @@
 import { all, type EvidenceItem } from '../api.ts';
 import { ProblemBox, useLoaded } from '../parts.tsx';
+import { DataTable } from '../table.tsx';
 
 const NOTES = [
   'Preliminary planning aid. The environment specification of the project and the radiation and parts standards of its agency take precedence; qualified radiation-effects engineers decide.',
@@ -22,30 +23,19 @@ export function AboutPage() {
       </ul>
       <h2>Checks against outside numbers</h2>
       <ProblemBox error={error} />
-      <table>
-        <thead>
-          <tr>
-            <th>Room</th>
-            <th>What</th>
-            <th>Ours</th>
-            <th>Published</th>
-            <th>Tolerance</th>
-            <th>Source</th>
-          </tr>
-        </thead>
-        <tbody>
-          {(value ?? []).map((row) => (
-            <tr key={row.what}>
-              <td>{row.room}</td>
-              <td>{row.what}</td>
-              <td>{row.ours}</td>
-              <td>{row.published}</td>
-              <td>{row.tolerance}</td>
-              <td>{row.source}</td>
-            </tr>
-          ))}
-        </tbody>
-      </table>
+      <DataTable
+        name="Checks against outside numbers"
+        rows={value ?? []}
+        keyOf={(row) => row.what}
+        columns={[
+          { header: 'Room', value: (row) => row.room },
+          { header: 'What', value: (row) => row.what },
+          { header: 'Ours', value: (row) => row.ours },
+          { header: 'Published', value: (row) => row.published },
+          { header: 'Tolerance', value: (row) => row.tolerance },
+          { header: 'Source', value: (row) => row.source },
+        ]}
+      />
     </>
   );
 }

@@ -4,6 +4,7 @@ import { all, call, type ExposureState, type TrajectoryItem } from '../api.ts';
 import { Figure } from '../figure.tsx';
 import { Empty, Link, ProblemBox, Progress, useLoaded } from '../parts.tsx';
 import { route, studyId } from '../state.ts';
+import { DataTable } from '../table.tsx';
 
 const MODES = [
   ['', 'as the rotation model allows'],
@@ -102,27 +103,33 @@ function Exposure({ trajectoryId, mode }: { trajectoryId: string; mode: string }
       {summary.byPhase.length > 2 && (
         <Figure scene={phaseFluenceScene(summary)} caption="Electrons above 1 MeV against the rotation offset." />
       )}
-      <table>
-        <caption>Fluence and peak flux of electrons, nominal</caption>
-        <thead>
-          <tr>
-            <th class="num">Above, MeV</th>
-            <th class="num">Fluence, cm⁻²</th>
-            <th class="num">Peak flux, cm⁻² s⁻¹</th>
-            <th>When, UTC</th>
-          </tr>
-        </thead>
-        <tbody>
-          {electrons.peaks.map((peak, index) => (
-            <tr key={peak.thresholdMeV}>
-              <td class="num">{three(peak.thresholdMeV)}</td>
-              <td class="num">{three(electrons.fluencePerCm2[index])}</td>
-              <td class="num">{three(peak.fluxPerCm2S)}</td>
-              <td>{peak.utc ?? '–'}</td>
-            </tr>
-          ))}
-        </tbody>
-      </table>
+      <h3>Fluence and peak flux of electrons, nominal</h3>
+      <DataTable
+        name="Fluence and peak flux of electrons"
+        rows={electrons.peaks.map((peak, index) => ({ ...peak, fluence: electrons.fluencePerCm2[index] }))}
+        keyOf={(peak) => String(peak.thresholdMeV)}
+        columns={[
+          {
+            header: 'Above, MeV',
+            numeric: true,
+            value: (peak) => peak.thresholdMeV,
+            cell: (peak) => three(peak.thresholdMeV),
+          },
+          {
+            header: 'Fluence, cm⁻²',
+            numeric: true,
+            value: (peak) => peak.fluence,
+            cell: (peak) => three(peak.fluence),
+          },
+          {
+            header: 'Peak flux, cm⁻² s⁻¹',
+            numeric: true,
+            value: (peak) => peak.fluxPerCm2S,
+            cell: (peak) => three(peak.fluxPerCm2S),
+          },
+          { header: 'When, UTC', value: (peak) => peak.utc },
+        ]}
+      />
     </>
   );
 }

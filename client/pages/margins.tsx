@@ -13,6 +13,7 @@ import {
 import { Figure } from '../figure.tsx';
 import { Empty, Link, ProblemBox, Progress, useLoaded, VerdictTag } from '../parts.tsx';
 import { go, route, studyId } from '../state.ts';
+import { DataTable } from '../table.tsx';
 import { BesideDose } from './beside.tsx';
 import { Comparison } from './comparison.tsx';
 import { OtherSources } from './otherSources.tsx';
@@ -165,6 +166,10 @@ function Result({ id, result }: { id: string; result: AssessmentResult }) {
     result.options.find((option) => option.optionId === optionId)?.places.find((place) => place.placeId === placeId)
       ?.name ?? placeId;
   const doses = result.shieldDose.filter((row) => row.caseId === caseId);
+  const movedAt = (row: { optionId: string; placeId: string }) =>
+    result.sensitivity.find(
+      (one) => one.caseId === caseId && one.optionId === row.optionId && one.placeId === row.placeId,
+    );
   const margins = result.margins.filter((row) => row.caseId === caseId && (!failing || row.verdict !== 'meets'));
   const depth = result.doseDepth.find((row) => row.caseId === caseId);
   const phased = doses.find((row) => row.byPhase.length > 2);
@@ -223,37 +228,59 @@ function Result({ id, result }: { id: string; result: AssessmentResult }) {
         </label>
       </div>
       <h2>Dose behind each shield</h2>
-      <table>
-        <thead>
-          <tr>
-            <th>Option</th>
-            <th>Place</th>
-            <th class="num">Nominal, krad(Si)</th>
-            <th class="num">5 to 95 %, krad(Si)</th>
-            <th class="num">Electrons</th>
-            <th class="num">Bremsstrahlung</th>
-            <th class="num">Protons</th>
-            <th class="num">Nothing measured</th>
-          </tr>
-        </thead>
-        <tbody>
-          {doses.map((row) => {
-            const dose = row.doseKradSi;
-            return (
-              <tr key={`${row.optionId}${row.placeId}`}>
-                <td>{optionName(row.optionId)}</td>
-                <td>{placeName(row.optionId, row.placeId)}</td>
-                <td class="num">{row.notAssessed ?? three(dose?.total)}</td>
-                <td class="num">{row.band === null ? '–' : `${three(row.band.p05)} to ${three(row.band.p95)}`}</td>
-                <td class="num">{dose === null ? '–' : percent(dose.electron / dose.total)}</td>
-                <td class="num">{dose === null ? '–' : percent(dose.bremsstrahlung / dose.total)}</td>
-                <td class="num">{dose === null ? '–' : percent(dose.proton / dose.total)}</td>
-                <td class="num">{percent(row.extrapolatedFraction)}</td>
-              </tr>
-            );
-          })}
-        </tbody>
-      </table>
+      <DataTable
+        name="Dose behind each shield"
+        rows={doses}
+        keyOf={(row) => `${row.optionId}${row.placeId}`}
+        columns={[
+          { header: 'Option', value: (row) => optionName(row.optionId) },
+          { header: 'Place', value: (row) => placeName(row.optionId, row.placeId) },
+          {
+            header: 'Nominal, krad(Si)',
+            numeric: true,
+            value: (row) => row.doseKradSi?.total,
+            cell: (row) => row.notAssessed ?? three(row.doseKradSi?.total),
+          },
+          {
+            header: '5 %, krad(Si)',
+            numeric: true,
+            value: (row) => row.band?.p05,
+            cell: (row) => three(row.band?.p05),
+          },
+          {
+            header: '95 %, krad(Si)',
+            numeric: true,
+            value: (row) => row.band?.p95,
+            cell: (row) => three(row.band?.p95),
+          },
+          ...(['electron', 'bremsstrahlung', 'proton'] as const).map((part) => ({
+            header: { electron: 'Electrons', bremsstrahlung: 'Bremsstrahlung', proton: 'Protons' }[part],
+            numeric: true,
+            value: (row: (typeof doses)[number]) =>
+              row.doseKradSi === null ? null : row.doseKradSi[part] / row.doseKradSi.total,
+            cell: (row: (typeof doses)[number]) =>
+              row.doseKradSi === null ? '–' : percent(row.doseKradSi[part] / row.doseKradSi.total),
+          })),
+          {
+            header: 'Layers −10 %, krad(Si)',
+            numeric: true,
+            value: (row) => movedAt(row)?.thinner10Pct?.doseKradSi,
+            cell: (row) => three(movedAt(row)?.thinner10Pct?.doseKradSi),
+          },
+          {
+            header: 'Layers +10 %, krad(Si)',
+            numeric: true,
+            value: (row) => movedAt(row)?.thicker10Pct?.doseKradSi,
+            cell: (row) => three(movedAt(row)?.thicker10Pct?.doseKradSi),
+          },
+          {
+            header: 'Nothing measured',
+            numeric: true,
+            value: (row) => row.extrapolatedFraction,
+            cell: (row) => percent(row.extrapolatedFraction),
+          },
+        ]}
+      />
       {lowest.length > 0 && (
         <Figure
           scene={marginScene(
@@ -263,39 +290,51 @@ function Result({ id, result }: { id: string; result: AssessmentResult }) {
         />
       )}
       <h2>Margins of the parts</h2>
-      <table>
-        <thead>
-          <tr>
-            <th>Part</th>
-            <th>Option</th>
-            <th>Place</th>
-            <th class="num">Capability, krad(Si)</th>
-            <th class="num">Dose 95 %, krad(Si)</th>
-            <th class="num">Achieved 95 %</th>
-            <th class="num">Required</th>
-            <th class="num">P(margin met)</th>
-            <th>Verdict</th>
-          </tr>
-        </thead>
-        <tbody>
-          {margins.map((row) => (
-            <tr key={`${row.partId}${row.optionId}`}>
-              <td>{partName(row.partId)}</td>
-              <td>{optionName(row.optionId)}</td>
-              <td>{placeName(row.optionId, row.placeId)}</td>
-              <td class="num">{three(row.capabilityKradSi)}</td>
-              <td class="num">{three(row.doseP95KradSi)}</td>
-              <td class="num">{three(row.achievedRdmP95)}</td>
-              <td class="num">{three(row.requiredRdm)}</td>
-              <td class="num">{percent(row.confidence)}</td>
-              <td>
+      <DataTable
+        name="Margins"
+        rows={margins}
+        keyOf={(row) => `${row.partId}${row.optionId}`}
+        columns={[
+          { header: 'Part', value: (row) => partName(row.partId) },
+          { header: 'Option', value: (row) => optionName(row.optionId) },
+          { header: 'Place', value: (row) => placeName(row.optionId, row.placeId) },
+          {
+            header: 'Capability, krad(Si)',
+            numeric: true,
+            value: (row) => row.capabilityKradSi,
+            cell: (row) => three(row.capabilityKradSi),
+          },
+          {
+            header: 'Dose 95 %, krad(Si)',
+            numeric: true,
+            value: (row) => row.doseP95KradSi,
+            cell: (row) => three(row.doseP95KradSi),
+          },
+          {
+            header: 'Achieved 95 %',
+            numeric: true,
+            value: (row) => row.achievedRdmP95,
+            cell: (row) => three(row.achievedRdmP95),
+          },
+          { header: 'Required', numeric: true, value: (row) => row.requiredRdm, cell: (row) => three(row.requiredRdm) },
+          {
+            header: 'P(margin met)',
+            numeric: true,
+            value: (row) => row.confidence,
+            cell: (row) => percent(row.confidence),
+          },
+          {
+            header: 'Verdict',
+            value: (row) => row.verdict,
+            cell: (row) => (
+              <>
                 <VerdictTag verdict={row.verdict} />
                 <span class="small"> {result.verdictReasons[row.reason]}</span>
-              </td>
-            </tr>
-          ))}
-        </tbody>
-      </table>
+              </>
+            ),
+          },
+        ]}
+      />
       <BesideDose result={result} caseId={caseId} />
       <h2>Options side by side</h2>
       <div class="columns">

@@ -3,6 +3,7 @@ import { three } from '../../server/figures/index.ts';
 import { all, call, type PartItem } from '../api.ts';
 import { Empty, ProblemBox, useLoaded } from '../parts.tsx';
 import { studyId } from '../state.ts';
+import { DataTable } from '../table.tsx';
 import { PartForm } from './partForm.tsx';
 
 const HEADER = 'partId,name,placeId,capabilityKradSi,capabilityBasis,requiredRdm';
@@ -40,47 +41,47 @@ export function PartsPage() {
       <ProblemBox error={error} />
       {value?.length === 0 && <Empty>No part yet: paste a list below.</Empty>}
       {value !== null && value.length > 0 && (
-        <table>
-          <thead>
-            <tr>
-              <th>Id</th>
-              <th>Part</th>
-              <th>Technology</th>
-              <th>Place</th>
-              <th class="num">Capability, krad(Si)</th>
-              <th>Basis</th>
-              <th class="num">Required margin</th>
-              <th>
-                <span class="hidden">Delete</span>
-              </th>
-            </tr>
-          </thead>
-          <tbody>
-            {value.map((part) => (
-              <tr key={part.id}>
-                <td>{part.partId}</td>
-                <td>{part.name}</td>
-                <td>{part.technology ?? '–'}</td>
-                <td>{part.placeId}</td>
-                <td class="num">
-                  {part.failureDosesKradSi === undefined
-                    ? three(part.capabilityKradSi)
-                    : `lot of ${part.failureDosesKradSi.length}`}
-                </td>
-                <td>{part.capabilityBasis ?? '–'}</td>
-                <td class="num">{part.requiredRdm === undefined ? 'study’s' : three(part.requiredRdm)}</td>
-                <td>
+        <DataTable
+          name="Parts"
+          rows={value}
+          keyOf={(part) => part.id}
+          columns={[
+            { header: 'Id', value: (part) => part.partId },
+            { header: 'Part', value: (part) => part.name },
+            { header: 'Technology', value: (part) => part.technology },
+            { header: 'Place', value: (part) => part.placeId },
+            {
+              header: 'Capability, krad(Si)',
+              numeric: true,
+              value: (part) => part.capabilityKradSi,
+              cell: (part) =>
+                part.failureDosesKradSi === undefined
+                  ? three(part.capabilityKradSi)
+                  : `lot of ${part.failureDosesKradSi.length}`,
+            },
+            { header: 'Basis', value: (part) => part.capabilityBasis },
+            {
+              header: 'Required margin',
+              numeric: true,
+              value: (part) => part.requiredRdm,
+              cell: (part) => (part.requiredRdm === undefined ? 'study’s' : three(part.requiredRdm)),
+            },
+            {
+              header: 'Change',
+              value: () => null,
+              cell: (part) => (
+                <>
                   <button type="button" aria-label={`Edit ${part.name}`} onClick={() => setEdited(part.id)}>
                     Edit
                   </button>{' '}
                   <button type="button" aria-label={`Delete ${part.name}`} onClick={() => remove(part.id)}>
                     Delete
                   </button>
-                </td>
-              </tr>
-            ))}
-          </tbody>
-        </table>
+                </>
+              ),
+            },
+          ]}
+        />
       )}
       {value
         ?.filter((part) => part.id === edited)

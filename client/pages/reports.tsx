@@ -2,6 +2,7 @@ import { useState } from 'preact/hooks';
 import { type AssessmentItem, all, call, type ReportItem } from '../api.ts';
 import { Empty, ProblemBox, useLoaded } from '../parts.tsx';
 import { go, route, studyId } from '../state.ts';
+import { DataTable } from '../table.tsx';
 
 const FIELDS = [
   ['title', 'Title', 'Radiation dose and margins'],
@@ -48,30 +49,26 @@ export function ReportsPage() {
       <ProblemBox error={error} />
       {value?.length === 0 && <Empty>No report issued yet.</Empty>}
       {value !== null && value.length > 0 && (
-        <table>
-          <thead>
-            <tr>
-              <th>Document</th>
-              <th>Issue</th>
-              <th>Date</th>
-              <th>Title</th>
-              <th>SHA-256 of the PDF</th>
-            </tr>
-          </thead>
-          <tbody>
-            {value.map((report) => (
-              <tr key={report.id}>
-                <td>
-                  <a href={`/api/reports/${report.id}/report.pdf`}>{report.documentNumber} (PDF)</a>
-                </td>
-                <td>{report.issue}</td>
-                <td>{report.dateUtc}</td>
-                <td>{report.name}</td>
-                <td class="small">{report.pdfSha256}</td>
-              </tr>
-            ))}
-          </tbody>
-        </table>
+        <DataTable
+          name="Issued reports"
+          rows={value}
+          keyOf={(report) => report.id}
+          columns={[
+            {
+              header: 'Document',
+              value: (report) => report.documentNumber,
+              cell: (report) => <a href={`/api/reports/${report.id}/report.pdf`}>{report.documentNumber} (PDF)</a>,
+            },
+            { header: 'Issue', value: (report) => report.issue },
+            { header: 'Date', value: (report) => report.dateUtc },
+            { header: 'Title', value: (report) => report.name },
+            {
+              header: 'SHA-256 of the PDF',
+              value: (report) => report.pdfSha256,
+              cell: (report) => <span class="small">{report.pdfSha256}</span>,
+            },
+          ]}
+        />
       )}
       <h2>Issue a report</h2>
       {done.length === 0 ? (

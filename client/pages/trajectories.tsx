@@ -3,6 +3,7 @@ import { three } from '../../server/figures/index.ts';
 import { all, type CaseItem, call, type TrajectoryItem } from '../api.ts';
 import { Empty, Link, ProblemBox, useLoaded } from '../parts.tsx';
 import { go, route, studyId } from '../state.ts';
+import { DataTable } from '../table.tsx';
 
 interface Waiting {
   readonly file: File;
@@ -26,42 +27,47 @@ export function TrajectoriesPage() {
       ) : value.length === 0 ? (
         <Empty>No trajectory yet: drop an ephemeris above, or sketch one.</Empty>
       ) : (
-        <table>
-          <thead>
-            <tr>
-              <th>Name</th>
-              <th>Planet</th>
-              <th>Closest approach, UTC</th>
-              <th class="num">Radius, planet radii</th>
-              <th class="num">Speed, km/s</th>
-              <th>Format</th>
-              <th>Notices</th>
-            </tr>
-          </thead>
-          <tbody>
-            {value.map((entry) => {
-              const lowest = [...entry.closestApproaches].sort((a, b) => a.radiusKm - b.radiusKm)[0];
-              return (
-                <tr key={entry.id} class={entry.id === selected ? 'chosen' : ''}>
-                  <td>
-                    <Link to={`/trajectories/${entry.id}`}>{entry.name}</Link>
-                  </td>
-                  <td>{entry.planet === 'uranus' ? 'Uranus' : 'Neptune'}</td>
-                  <td>{lowest?.utc ?? '–'}</td>
-                  <td class="num">{three(lowest?.radiusPlanetRadii)}</td>
-                  <td class="num">{three(lowest?.speedKmS)}</td>
-                  <td>{entry.format}</td>
-                  <td>{entry.notices.filter((notice) => notice.severity !== 'info').length || 'none'}</td>
-                </tr>
-              );
-            })}
-          </tbody>
-        </table>
+        <DataTable
+          name="Trajectories"
+          rows={value}
+          keyOf={(entry) => entry.id}
+          selected={selected}
+          columns={[
+            {
+              header: 'Name',
+              value: (entry) => entry.name,
+              cell: (entry) => <Link to={`/trajectories/${entry.id}`}>{entry.name}</Link>,
+            },
+            { header: 'Planet', value: (entry) => (entry.planet === 'uranus' ? 'Uranus' : 'Neptune') },
+            { header: 'Closest approach, UTC', value: (entry) => closest(entry)?.utc },
+            {
+              header: 'Radius, planet radii',
+              numeric: true,
+              value: (entry) => closest(entry)?.radiusPlanetRadii,
+              cell: (entry) => three(closest(entry)?.radiusPlanetRadii),
+            },
+            {
+              header: 'Speed, km/s',
+              numeric: true,
+              value: (entry) => closest(entry)?.speedKmS,
+              cell: (entry) => three(closest(entry)?.speedKmS),
+            },
+            { header: 'Format', value: (entry) => entry.format },
+            {
+              header: 'Notices',
+              value: (entry) => entry.notices.filter((notice) => notice.severity !== 'info').length || 'none',
+            },
+          ]}
+        />
       )}
       {shown !== undefined && <Reading entry={shown} onDeleted={again} />}
       {value !== null && value.length > 0 && <Cases trajectories={value} />}
     </>
   );
+}
+
+function closest(entry: TrajectoryItem) {
+  return [...entry.closestApproaches].sort((a, b) => a.radiusKm - b.radiusKm)[0];
 }
 
 function Reading({ entry, onDeleted }: { entry: TrajectoryItem; onDeleted: () => void }) {
