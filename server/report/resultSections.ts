@@ -98,6 +98,7 @@ export const doses: Section = (flow, { result }) => {
       { header: 'Electrons', weight: 1.25, align: 'right' },
       { header: 'Photons', weight: 1.15, align: 'right' },
       { header: 'Protons', weight: 1.1, align: 'right' },
+      { header: 'Other', weight: 1, align: 'right' },
       { header: 'Not measured', weight: 1.3, align: 'right' },
     ],
     size: 7.2,
@@ -115,10 +116,11 @@ export const doses: Section = (flow, { result }) => {
         dose === null ? '–' : share(dose.electron),
         dose === null ? '–' : share(dose.bremsstrahlung),
         dose === null ? '–' : share(dose.proton),
+        dose === null ? '–' : share(dose.other),
         percent(row.extrapolatedFraction),
       ];
     }),
-    note: 'Shares of the nominal dose; photons are the bremsstrahlung of the electrons. Not measured: share of the belt dose from where nothing was measured. The dose carries no margin. Source: this assessment.',
+    note: 'Shares of the nominal dose; photons are the bremsstrahlung of the electrons, other the sources that were entered. Not measured: share of the belt dose from where nothing was measured. The dose carries no margin. Source: this assessment.',
   });
 };
 
