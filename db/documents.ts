@@ -9,7 +9,8 @@ export type DocumentTable =
   | 'options'
   | 'parts'
   | 'assessments'
-  | 'reports';
+  | 'reports'
+  | 'beltTables';
 
 export interface StoredDocument<T> {
   readonly id: string;

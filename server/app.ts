@@ -2,6 +2,7 @@ import express, { type Express, type NextFunction, type Request, type Response }
 import helmet from 'helmet';
 import type { Logger } from 'pino';
 import { assessmentRoutes } from './api/assessments.ts';
+import { beltModelRoutes } from './api/beltModels.ts';
 import { catalogueRoutes } from './api/catalogue.ts';
 import { comparisonRoutes } from './api/comparison.ts';
 import { exposureRoutes } from './api/exposures.ts';
@@ -52,6 +53,7 @@ export function createApp(shop: Shop, config: Config, log: Logger, client?: expr
 
   const routes = [
     ...catalogueRoutes(shop),
+    ...beltModelRoutes(shop),
     ...studyRoutes(shop),
     ...trajectoryRoutes(shop, config.maxUploadBytes),
     ...exposureRoutes(shop),

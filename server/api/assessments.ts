@@ -6,6 +6,7 @@ import { checkOtherSource, type OtherSourceInput } from '../dose/index.ts';
 import { AppError } from '../errors.ts';
 import type { AssessmentSnapshot, SnapshotOption } from '../jobs/snapshot.ts';
 import { type AssessedCase, type AssessmentResult, checkParts } from '../margin/index.ts';
+import { withBeltTable } from './beltModels.ts';
 import { documentRoutes, sendFile } from './documentRoutes.ts';
 import { resultCsv } from './resultCsv.ts';
 import { defineRoute, type Route } from './routes.ts';
@@ -203,7 +204,7 @@ export function startAssessment(shop: Shop, request: AssessmentRequest): { id: s
     parts,
     otherSources,
     sampling: request.sampling,
-    environment: request.environment as AssessmentSnapshot['environment'],
+    environment: withBeltTable(shop, request.environment as AssessmentSnapshot['environment']),
     ...(request.baselineOptionId === undefined ? {} : { baselineOptionId: request.baselineOptionId }),
     ...(request.sensitivity === undefined ? {} : { sensitivity: request.sensitivity }),
     ...(request.otherTargetMaterialIds === undefined

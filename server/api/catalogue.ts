@@ -2,7 +2,6 @@ import { z } from 'zod';
 import { PLANETS } from '../constants/planets.ts';
 import { ERROR_CODES, type ErrorCode } from '../errors.ts';
 import { FIELD_MODELS, fieldModel } from '../field/index.ts';
-import { BELT_MODEL_IDS, beltModel } from '../flux/index.ts';
 import { ROTATION_MODELS } from '../frames/rotation.ts';
 import { materials } from '../matter/index.ts';
 import { ENGINE_VERSION } from '../version.ts';
@@ -80,20 +79,6 @@ export function catalogueRoutes(shop: Shop): Route[] {
             periodH,
             periodErrorH,
           })),
-        ),
-    }),
-    defineRoute({
-      method: 'get',
-      path: '/api/belt-models',
-      tag: 'environment',
-      summary: 'Trapped-particle models',
-      answer: page,
-      handler: () =>
-        whole(
-          BELT_MODEL_IDS.map((id) => {
-            const { planet, label, source, lMin, lMax } = beltModel(id);
-            return { id, planet, label, source, lMin, lMax };
-          }),
         ),
     }),
     defineRoute({

@@ -1,7 +1,8 @@
 import { readFile } from 'node:fs/promises';
 import { deserialize } from 'node:v8';
-import type { ExposureSummary } from '../fluence/index.ts';
+import { type ExposureSummary, refuseOtherPlanet } from '../fluence/index.ts';
 import { type EnvironmentRequest, environmentFor } from '../jobs/environment.ts';
+import { withBeltTable } from './beltModels.ts';
 import { defineRoute, type Route } from './routes.ts';
 import { accepted, anyObject, exposureBody } from './schemas.ts';
 import { found, type Shop } from './shop.ts';
@@ -18,10 +19,18 @@ export function exposureRoutes(shop: Shop): Route[] {
       answer: accepted,
       status: 202,
       handler: ({ body, response }) => {
-        const { trajectoryId, ...asked } = body;
+        const { trajectoryId, thresholdsMeV, compareFieldModelIds, sampling, ...asked } = body;
         const trajectory = shop.storedTrajectory(trajectoryId);
-        const environment = environmentFor(asked as EnvironmentRequest, trajectory.planet, trajectory.startTdbS);
-        const job = shop.runner.add('exposure', trajectoryId, { trajectoryId, environment });
+        const environment = environmentFor(
+          withBeltTable(shop, asked as EnvironmentRequest),
+          trajectory.planet,
+          trajectory.startTdbS,
+        );
+        for (const id of compareFieldModelIds ?? []) refuseOtherPlanet(id, trajectory.planet, 'compareFieldModelIds');
+        const summary = Object.fromEntries(
+          Object.entries({ thresholdsMeV, compareFieldModelIds, sampling }).filter(([, value]) => value !== undefined),
+        );
+        const job = shop.runner.add('exposure', trajectoryId, { trajectoryId, environment, summary });
         response.setHeader('Location', `/api/exposures/${job.id}`);
         return { id: job.id, jobId: job.id };
       },
@@ -36,8 +45,8 @@ export function exposureRoutes(shop: Shop): Route[] {
         const job = found(shop.runner.rows.get(params.id), 'exposure', params.id);
         let summary: ExposureSummary | null = null;
         if (job.state === 'done' && job.result !== null) {
-          const { key } = JSON.parse(job.result) as { key: string };
-          const path = shop.artefacts.path(`${key}:summary`);
+          const { summaryKey } = JSON.parse(job.result) as { summaryKey: string };
+          const path = shop.artefacts.path(summaryKey);
           if (path !== null) summary = deserialize(await readFile(path)) as ExposureSummary;
         }
         const problem = job.problem === null ? null : (JSON.parse(job.problem) as object);

@@ -1,11 +1,12 @@
 import { createReadStream } from 'node:fs';
 import { readReferenceJson } from '../constants/reference.ts';
 import { FIELD_MODELS, isFieldModelId } from '../field/index.ts';
-import { beltModel } from '../flux/index.ts';
+import { beltModel, tableBelts } from '../flux/index.ts';
 import { isRotationModelId, phaseSigmaDeg, ROTATION_MODELS } from '../frames/rotation.ts';
 import { compareAssessments } from '../margin/index.ts';
 import type { EvidenceRow, ReportInput } from '../report/types.ts';
 import { resultOf } from './assessments.ts';
+import { storedTable } from './beltModels.ts';
 import { documentRoutes } from './documentRoutes.ts';
 import { defineRoute, type Route } from './routes.ts';
 import { anyObject, page, reportBody } from './schemas.ts';
@@ -49,7 +50,7 @@ export function reportRoutes(shop: Shop): Route[] {
               summary: stored?.body.summary ?? null,
             };
           }),
-          environments: environmentsOf(result),
+          environments: await environmentsOf(shop, result),
           evidence: evidenceRows(),
           previous:
             before === null
@@ -106,28 +107,38 @@ export function evidenceRows(): EvidenceRow[] {
   return readReferenceJson<EvidenceRow[]>('evidence', 'checks.json');
 }
 
-function environmentsOf(result: Awaited<ReturnType<typeof resultOf>>): ReportInput['environments'] {
-  return result.trajectories.map(({ trajectoryId, environment }) => {
-    const { fieldModelId, rotationModelId, beltModelId, phase } = environment;
-    const rotation = isRotationModelId(rotationModelId) ? ROTATION_MODELS[rotationModelId] : null;
-    return {
-      trajectoryId,
-      field: isFieldModelId(fieldModelId)
-        ? { id: fieldModelId, label: FIELD_MODELS[fieldModelId].label, source: FIELD_MODELS[fieldModelId].source }
-        : null,
-      rotation:
-        rotation === null
-          ? null
-          : {
-              id: rotation.id,
-              label: rotation.label,
-              source: rotation.source,
-              periodH: rotation.periodH,
-              periodErrorH: rotation.periodErrorH,
-              sigmaDegPerYear: phaseSigmaDeg(rotation, rotation.anchorTdbS + 365.25 * 86_400),
-            },
-      belts: { id: beltModelId, label: beltModel(beltModelId).label, source: beltModel(beltModelId).source },
-      phaseMode: phase.mode,
-    };
-  });
+async function environmentsOf(
+  shop: Shop,
+  result: Awaited<ReturnType<typeof resultOf>>,
+): Promise<ReportInput['environments']> {
+  return Promise.all(
+    result.trajectories.map(async ({ trajectoryId, environment }) => {
+      const { fieldModelId, rotationModelId, beltModelId, phase } = environment;
+      const { beltTableSha256 } = environment;
+      const belts =
+        beltTableSha256 === undefined
+          ? beltModel(beltModelId)
+          : tableBelts(beltModelId, await storedTable(shop, beltTableSha256));
+      const rotation = isRotationModelId(rotationModelId) ? ROTATION_MODELS[rotationModelId] : null;
+      return {
+        trajectoryId,
+        field: isFieldModelId(fieldModelId)
+          ? { id: fieldModelId, label: FIELD_MODELS[fieldModelId].label, source: FIELD_MODELS[fieldModelId].source }
+          : null,
+        rotation:
+          rotation === null
+            ? null
+            : {
+                id: rotation.id,
+                label: rotation.label,
+                source: rotation.source,
+                periodH: rotation.periodH,
+                periodErrorH: rotation.periodErrorH,
+                sigmaDegPerYear: phaseSigmaDeg(rotation, rotation.anchorTdbS + 365.25 * 86_400),
+              },
+        belts: { id: beltModelId, label: belts.label, source: belts.source },
+        phaseMode: phase.mode,
+      };
+    }),
+  );
 }

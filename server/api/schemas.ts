@@ -141,7 +141,22 @@ export const environmentSchema = z.object({
   solarWindState: z.enum(['as-encountered', 'long-term-mean']).optional(),
 });
 
-export const exposureBody = environmentSchema.extend({ trajectoryId: id });
+export const exposureBody = environmentSchema.extend({
+  trajectoryId: id,
+  thresholdsMeV: z
+    .object({
+      electron: z.array(z.number().min(0.02).max(100)).min(1).max(30).optional(),
+      proton: z.array(z.number().min(0.01).max(1000)).min(1).max(30).optional(),
+    })
+    .optional(),
+  compareFieldModelIds: z.array(z.string().max(64)).max(5).optional(),
+  sampling: z
+    .object({
+      draws: z.number().int().min(100).max(10_000).default(1000),
+      seed: z.number().int().min(0).max(4_294_967_295).default(1),
+    })
+    .optional(),
+});
 
 const fluenceSource = z.object({
   species: z.enum(['electron', 'proton']),

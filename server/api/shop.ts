@@ -5,7 +5,13 @@ import { Documents, type DocumentTable } from '../../db/documents.ts';
 import type { Store } from '../../db/open.ts';
 import { AppError } from '../errors.ts';
 import type { EnvironmentChoice } from '../fluence/index.ts';
-import { exposureOf, runAssessment, type StoredTrajectory, type Workshop } from '../jobs/assessment.ts';
+import {
+  exposureOf,
+  runAssessment,
+  type StoredTrajectory,
+  type SummaryRequest,
+  type Workshop,
+} from '../jobs/assessment.ts';
 import type { Pool } from '../jobs/pool.ts';
 import { type JobHandler, Runner } from '../jobs/runner.ts';
 import { shieldResponseOf } from '../jobs/shieldResponses.ts';
@@ -15,6 +21,7 @@ import type { PartInput } from '../margin/index.ts';
 import { describeShield } from '../shielding/shieldPlan.ts';
 import type { StackInput } from '../shielding/types.ts';
 import type { TrajectorySummary } from '../trajectory/index.ts';
+import type { BeltTableBody } from './beltModels.ts';
 import type { ResponseOrder } from './responses.ts';
 
 export interface StudyBody {
@@ -70,6 +77,7 @@ export class Shop implements Workshop {
   readonly parts: Documents<PartInput>;
   readonly assessments: Documents<AssessmentBody>;
   readonly reports: Documents<ReportBody>;
+  readonly beltTables: Documents<BeltTableBody>;
   readonly runner: Runner;
 
   constructor(store: Store, dataDir: string, pool: Pool, onDefect: (error: unknown) => void) {
@@ -86,16 +94,22 @@ export class Shop implements Workshop {
     this.parts = documents('parts');
     this.assessments = documents('assessments');
     this.reports = documents('reports');
+    this.beltTables = documents('beltTables');
     const handlers = new Map<string, JobHandler>([
       ['assessment', (input, context) => runAssessment(this, this.assessments, (input as { id: string }).id, context)],
       ['thickness', (input, context) => runThickness(this, input as ThicknessSnapshot, context)],
       [
         'exposure',
         async (input, context) => {
-          const { trajectoryId, environment } = input as { trajectoryId: string; environment: EnvironmentChoice };
+          const { trajectoryId, environment, summary } = input as {
+            trajectoryId: string;
+            environment: EnvironmentChoice;
+            summary?: SummaryRequest;
+          };
           context.progress(0.05, 'Following the path through the belts');
-          const { key } = await exposureOf(this, this.storedTrajectory(trajectoryId), environment, context);
-          return { key };
+          const trajectory = this.storedTrajectory(trajectoryId);
+          const { key, summaryKey } = await exposureOf(this, trajectory, environment, context, summary);
+          return { key, summaryKey };
         },
       ],
       [

@@ -7,6 +7,7 @@ import { checkThickness, type ThicknessResult } from '../margin/index.ts';
 import { describeStack, normaliseStack } from '../shielding/stack.ts';
 import type { StackInput } from '../shielding/types.ts';
 import { requestedCases } from './assessments.ts';
+import { withBeltTable } from './beltModels.ts';
 import { defineRoute, type Route } from './routes.ts';
 import { accepted, anyObject, environmentSchema, otherSourceSchema, stackSchema } from './schemas.ts';
 import { found, type Shop } from './shop.ts';
@@ -141,7 +142,7 @@ function snapshotOf(shop: Shop, body: z.infer<typeof thicknessBody>): ThicknessS
     minimumMm: body.minimumMm,
     maximumMm: body.maximumMm,
     enclosed: Object.fromEntries(enclosed.map((key) => [key, body[key]])),
-    environment: body.environment as EnvironmentRequest,
+    environment: withBeltTable(shop, body.environment as EnvironmentRequest),
   };
   checkThickness({ ...snapshot, trajectories: trajectoryIds.map((trajectoryId) => ({ trajectoryId })) });
   return snapshot;

@@ -11,4 +11,10 @@ export { type FluenceBand, type FluencePercentiles, TIME_SIGMA_DEX } from './per
 export { integralFluence, variantEdges } from './spectra.ts';
 export { DEFAULT_THRESHOLDS_MEV, type ExposureSummary, type SpeciesSummary } from './summary.ts';
 export type { EnvironmentChoice, ExposureVariant, FluenceArtefact, FluxHistory, PhaseMode } from './types.ts';
-export { DEFAULT_SWEEP_COUNT, defaultPhaseMode, PHASE_KNOWN_SIGMA_DEG, rotationModelFor } from './variants.ts';
+export {
+  DEFAULT_SWEEP_COUNT,
+  defaultPhaseMode,
+  PHASE_KNOWN_SIGMA_DEG,
+  refuseOtherPlanet,
+  rotationModelFor,
+} from './variants.ts';

@@ -2,7 +2,7 @@ import type { Artefacts } from '../../db/artefacts.ts';
 import type { Blobs } from '../../db/blobs.ts';
 import type { Documents } from '../../db/documents.ts';
 import { contentHash } from '../canonical.ts';
-import type { EnvironmentChoice } from '../fluence/index.ts';
+import type { EnvironmentChoice, ExposureOptions } from '../fluence/index.ts';
 import {
   type AssessmentResult,
   type ResultNotice,
@@ -40,32 +40,39 @@ export interface StoredTrajectory {
   readonly pathSha256: string;
 }
 
+/** What only the summary of an exposure depends on. */
+export type SummaryRequest = Pick<ExposureOptions, 'thresholdsMeV' | 'sampling' | 'compareFieldModelIds'>;
+
 /** Fluence artefact of a trajectory in an environment: computed once, then found by its hash. */
 export async function exposureOf(
   shop: Workshop,
   trajectory: StoredTrajectory,
   environment: EnvironmentChoice,
   context: JobContext,
-): Promise<{ key: string; fluencePath: string; summaryPath: string }> {
+  summaryRequest: SummaryRequest = {},
+): Promise<{ key: string; summaryKey: string; fluencePath: string; summaryPath: string }> {
   const key = contentHash({ kind: 'exposure', engine: ENGINE_VERSION, path: trajectory.pathSha256, environment });
   let fluencePath = shop.artefacts.path(key);
-  let summaryPath = shop.artefacts.path(`${key}:summary`);
+  const summaryKey = `${key}:summary:${contentHash(summaryRequest)}`;
+  let summaryPath = shop.artefacts.path(summaryKey);
   if (fluencePath === null || summaryPath === null) {
-    const temporary = shop.blobs.path(`.exposure-${key}`);
+    const temporary = shop.blobs.path(`.exposure-${contentHash(summaryKey)}`);
     const summary = await shop.pool.run(
       {
         kind: 'exposure',
         filePath: shop.blobs.path(trajectory.blobSha256),
         request: trajectory.request,
         environment,
+        summary: summaryRequest,
+        beltTablePath: environment.beltTableSha256 === undefined ? null : shop.blobs.path(environment.beltTableSha256),
         outPath: temporary,
       },
       context.signal,
     );
     fluencePath = await shop.artefacts.adopt(key, 'fluence', temporary);
-    summaryPath = shop.artefacts.put(`${key}:summary`, 'exposureSummary', summary);
+    summaryPath = shop.artefacts.put(summaryKey, 'exposureSummary', summary);
   }
-  return { key, fluencePath, summaryPath };
+  return { key, summaryKey, fluencePath, summaryPath };
 }
 
 /** The main job: exposures, responses, then the assessment itself; everything already known is taken from the store. */

@@ -13,6 +13,8 @@ export interface EnvironmentRequest {
   readonly satelliteDips?: boolean;
   readonly protonUpperBound?: boolean;
   readonly solarWindState?: 'as-encountered' | 'long-term-mean';
+  /** The uploaded table that `beltModelId` names, by content; absent with built-in belts. */
+  readonly beltTable?: { readonly planet: PlanetId; readonly sha256: string };
 }
 
 /**
@@ -31,11 +33,14 @@ export function environmentFor(request: EnvironmentRequest, planet: PlanetId, ep
     field !== undefined && isFieldModelId(field) && FIELD_MODELS[field].planet === planet
       ? field
       : defaultFieldModel(planet).id;
-  const beltModelId = belts !== undefined && beltModel(belts).planet === planet ? belts : defaultBeltModelId(planet);
+  const { beltTable } = request;
+  const beltPlanet = belts === undefined ? null : (beltTable?.planet ?? beltModel(belts).planet);
+  const beltModelId = belts !== undefined && beltPlanet === planet ? belts : defaultBeltModelId(planet);
   return {
     fieldModelId,
     rotationModelId,
     beltModelId,
+    ...(beltTable !== undefined && beltPlanet === planet ? { beltTableSha256: beltTable.sha256 } : {}),
     phase: request.phase ?? { mode: defaultPhaseMode(rotationModelFor(rotationModelId, planet), epochTdbS) },
     ...(request.satelliteDips === undefined ? {} : { satelliteDips: request.satelliteDips }),
     ...(request.protonUpperBound === undefined ? {} : { protonUpperBound: request.protonUpperBound }),

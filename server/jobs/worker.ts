@@ -16,6 +16,7 @@ import {
   type ExposureSummary,
   type FluenceArtefact,
 } from '../fluence/index.ts';
+import { type BeltTable, tableBelts } from '../flux/index.ts';
 import { type AssessmentInput, type AssessmentResult, assess } from '../margin/index.ts';
 import { renderReport } from '../report/index.ts';
 import type { ReportInput } from '../report/types.ts';
@@ -23,6 +24,7 @@ import { composeShield } from '../shielding/composeShield.ts';
 import { type ResponseOptions, runShard, type ShardTally, type ShardTask } from '../shielding/response.ts';
 import type { ShieldInput, ShieldResponse } from '../shielding/types.ts';
 import { readTrajectory, type TrajectoryRequest, type TrajectorySummary } from '../trajectory/index.ts';
+import type { SummaryRequest } from './assessment.ts';
 import { type EvaluateFieldInput, evaluateField, type SamplePathInput, samplePath } from './pathSampling.ts';
 
 /** What a worker can be asked for; every task and answer is a plain serialisable value. */
@@ -33,6 +35,9 @@ export type WorkerTask =
       readonly filePath: string;
       readonly request: TrajectoryRequest;
       readonly environment: EnvironmentChoice;
+      readonly summary: SummaryRequest;
+      /** File of the uploaded belt table; null with built-in belts. */
+      readonly beltTablePath: string | null;
       /** Where to write the fluence artefact. */
       readonly outPath: string;
     }
@@ -104,7 +109,12 @@ export default async function work(task: WorkerTask): Promise<unknown> {
       }));
     case 'exposure':
       return withTrajectory(task.filePath, task.request, ({ path }) => {
-        const { artefact, summary } = computeExposure(path, task.environment);
+        const { artefact, summary } = computeExposure(path, task.environment, {
+          ...task.summary,
+          ...(task.beltTablePath === null
+            ? {}
+            : { belts: tableBelts(task.environment.beltModelId, readTable(task.beltTablePath)) }),
+        });
         writeFileSync(task.outPath, serialize(artefact));
         return summary;
       });
@@ -143,6 +153,10 @@ function withTrajectory<T>(
   } finally {
     source.close();
   }
+}
+
+function readTable(path: string): BeltTable {
+  return JSON.parse(readFileSync(path, 'utf8')) as BeltTable;
 }
 
 function readResponse(path: string): ShieldResponse {

@@ -30,7 +30,7 @@ export function startService(environment: Record<string, string> = {}): TestServ
     shop,
     rows: () =>
       Object.fromEntries(
-        ['studies', 'trajectories', 'cases', 'stacks', 'options', 'parts', 'assessments', 'reports', 'jobs'].map(
+        ['studies', 'trajectories', 'cases', 'stacks', 'options', 'parts', 'assessments', 'reports', 'jobs', 'beltTables'].map(
           (table) => [table, (store.prepare(`SELECT count(*) AS n FROM ${table}`).get() as { n: number }).n],
         ),
       ),
