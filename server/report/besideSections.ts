@@ -99,7 +99,7 @@ export const besideDose: Section = (flow, { result }) => {
       three(row.damage?.totalMeVPerG),
       three(row.damage?.neutronEquivalentPerCm2),
     ]),
-    note: 'Behind the shield, nominal belts and other sources given as fluence. 1 MeV neutrons: the fluence with the same damage dose in silicon. Source: this assessment; energy-loss tables as listed in the evidence annex.',
+    note: 'Behind the shield, nominal belts and other sources given as fluence. 1 MeV neutrons: the fluence with the same damage dose in silicon. Source: this assessment; non-ionising energy loss after Summers et al. (1993), IEEE Trans. Nucl. Sci. 40, 1372, and for protons from 15 MeV Huhtinen and Aarnio (1993), Nucl. Instrum. Meth. A 335, 580; neutrons at 95 MeV mb (ASTM E722).',
   });
   const limits = result.shieldDose.find(({ charging }) => charging !== null)?.charging ?? null;
   if (limits !== null) {
@@ -122,7 +122,7 @@ export const besideDose: Section = (flow, { result }) => {
         row.charging === null ? '–' : CURRENT_WORDS[row.charging.currentFlag],
         row.charging === null ? '–' : FLUENCE_WORDS[row.charging.fluenceFlag],
       ]),
-      note: `Against ${three(limits.currentLimitPaPerCm2)} pA/cm², ${three(limits.coldCurrentLimitPaPerCm2)} pA/cm² for cold dielectrics and ${three(limits.fluence10hLimitPerCm2)} cm⁻² in any 10 h, nominal belts. A flag calls for an analysis; the absence of one is no certificate. Source: this assessment.`,
+      note: `Against ${three(limits.currentLimitPaPerCm2)} pA/cm², ${three(limits.coldCurrentLimitPaPerCm2)} pA/cm² for cold dielectrics (from memory, to be confirmed in ECSS-E-ST-20-06C) and ${three(limits.fluence10hLimitPerCm2)} cm⁻² in any 10 h, nominal belts. A flag calls for an analysis; the absence of one is no certificate. Source: this assessment.`,
     });
   }
   const others = result.shieldDose.flatMap((row) =>
