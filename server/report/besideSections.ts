@@ -122,7 +122,7 @@ export const besideDose: Section = (flow, { result }) => {
         row.charging === null ? '–' : CURRENT_WORDS[row.charging.currentFlag],
         row.charging === null ? '–' : FLUENCE_WORDS[row.charging.fluenceFlag],
       ]),
-      note: `Against ${three(limits.currentLimitPaPerCm2)} pA/cm², ${three(limits.coldCurrentLimitPaPerCm2)} pA/cm² for cold dielectrics (from memory, to be confirmed in ECSS-E-ST-20-06C) and ${three(limits.fluence10hLimitPerCm2)} cm⁻² in any 10 h, nominal belts. A flag calls for an analysis; the absence of one is no certificate. Source: this assessment.`,
+      note: `Against ${three(limits.currentLimitPaPerCm2)} pA/cm², ${three(limits.coldCurrentLimitPaPerCm2)} pA/cm² for cold dielectrics and ${three(limits.fluence10hLimitPerCm2)} cm⁻² in any 10 h, nominal belts; these figures are from memory of NASA-HDBK-4002A (now 4002B) and, for cold dielectrics, ECSS-E-ST-20-06C, to be confirmed there. A flag calls for an analysis; the absence of one is no certificate. Source: this assessment.`,
     });
   }
   const others = result.shieldDose.flatMap((row) =>
