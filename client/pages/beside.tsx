@@ -74,8 +74,9 @@ export function BesideDose({ result, caseId }: { result: AssessmentResult; caseI
       {limits !== null && (
         <p class="small">
           Screened against {three(limits.currentLimitPaPerCm2)} pA/cm², {three(limits.coldCurrentLimitPaPerCm2)} pA/cm²
-          for cold dielectrics, and {three(limits.fluence10hLimitPerCm2)} cm⁻² in any 10 h. A flag calls for an
-          analysis; the absence of one is no certificate.
+          for cold dielectrics, and {three(limits.fluence10hLimitPerCm2)} cm⁻² in any 10 h; figures from memory of
+          NASA-HDBK-4002A (now 4002B) and, for cold dielectrics, ECSS-E-ST-20-06C, to be confirmed there. A flag calls
+          for an analysis; the absence of one is no certificate.
         </p>
       )}
       {others.length > 0 && (
