@@ -87,6 +87,7 @@ export function fluencePercentiles(
         binFactor[bin] = 10 ** (shared + factor * radial[species][bin]);
       }
       const out = spectra[species];
+      const data = artefact[species];
       const edges = out.length;
       out.fill(0);
       for (let group = 0; group < groups; group++) {
@@ -98,7 +99,7 @@ export function fluencePercentiles(
           const factor = state * binFactor[bin];
           if (species === 'electron' && factor * ratio[bin] > 1) exceeds = true;
           const at = row * edges;
-          for (let k = 0; k < edges; k++) out[k] += factor * artefact[species][at + k];
+          for (let k = 0; k < edges; k++) out[k] += factor * data[at + k];
         }
       }
       const spread = artefact.energySigmaDex[species];

@@ -8,13 +8,15 @@ const FIXED = { phase: { mode: 'offset', offsetDeg: 0 }, thresholdsMeV: { electr
 const JOB_TIMEOUT_MS = 60_000;
 let service: TestService;
 let trajectoryId: string;
+let studyId: string;
 
 beforeAll(async () => {
   service = startService();
   const study = await request(service.app).post('/api/studies').send({ name: 'Tables' });
+  studyId = study.body.id;
   const made = await request(service.app)
     .post('/api/trajectories')
-    .field('studyId', study.body.id)
+    .field('studyId', studyId)
     .attach('file', OEM, 'path.oem');
   expect(made.status, JSON.stringify(made.body)).toBe(201);
   trajectoryId = made.body.id;
@@ -85,6 +87,35 @@ describe('belt tables', () => {
     expect((await request(service.app).get(`/api/belt-models/${id}`)).status).toBe(404);
     const gone = await request(service.app).post('/api/exposures').send({ trajectoryId, beltModelId: id });
     expect(gone.body.code).toBe('BELT_MODEL_UNKNOWN');
+  });
+
+  it('stay with an assessment when they are deleted', { timeout: JOB_TIMEOUT_MS }, async () => {
+    const { id, sha256 } = (await post(table())).body;
+    const stack = await request(service.app)
+      .post('/api/stacks')
+      .send({ studyId, name: 'Thin', geometry: 'slab', layers: [{ materialId: 'Al', thicknessMm: 0.3 }] });
+    const made = await request(service.app)
+      .post('/api/assessments')
+      .send({
+        studyId,
+        name: 'With a table',
+        trajectoryIds: [trajectoryId],
+        stackIds: [stack.body.id],
+        environment: { phase: { mode: 'published' }, beltModelId: id },
+        sampling: { draws: 100, seed: 1 },
+        sensitivity: false,
+      });
+    expect(made.status, JSON.stringify(made.body)).toBe(202);
+    // At once, while the job has yet to follow the path: the assessment alone holds on to the table.
+    expect((await request(service.app).delete(`/api/belt-models/${id}`)).status).toBe(204);
+    for (;;) {
+      const { body } = await request(service.app).get(`/api/jobs/${made.body.jobId}`);
+      if (body.state === 'failed') throw new Error(JSON.stringify(body.problem));
+      if (body.state === 'done') break;
+      await new Promise((resolve) => setTimeout(resolve, 50));
+    }
+    const { body: result } = await request(service.app).get(`/api/assessments/${made.body.id}/result.json`);
+    expect(result.trajectories[0].environment).toMatchObject({ beltModelId: id, beltTableSha256: sha256 });
   });
 
   it.each([
