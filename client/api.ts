@@ -1,6 +1,7 @@
 import type { ExposureSummary } from '../server/fluence/summary.ts';
 import type { AssessmentResult } from '../server/margin/result.ts';
 import type { ThicknessResult, ThicknessSolution } from '../server/margin/thickness.ts';
+import type { ShieldInput } from '../server/shielding/types.ts';
 
 /** Typed calls of the service. Only types come from the server; nothing is computed here. */
 export interface ProblemPlace {
@@ -62,6 +63,7 @@ export interface CaseItem {
 export interface StackItem {
   readonly id: string;
   readonly name: string;
+  readonly version: number;
   readonly geometry: string;
   readonly innerRadiusMm?: number;
   readonly backing?: string;
@@ -81,10 +83,15 @@ export interface StackItem {
 export interface OptionItem {
   readonly id: string;
   readonly name: string;
+  readonly version: number;
   readonly massKg: number | null;
   readonly places: readonly {
     readonly placeId: string;
     readonly name: string;
+    readonly shield: ShieldInput;
+    readonly areaM2?: number;
+    readonly innerBoxMm?: readonly [number, number, number];
+    readonly innerSphereRadiusMm?: number;
     readonly shieldText: string;
     readonly massKg: number | null;
   }[];
@@ -193,10 +200,19 @@ export function setToken(token: string): void {
 }
 
 /** @throws {Refusal} on every answer that is not a success */
-export async function call<T>(method: string, path: string, body?: unknown, type = 'application/json'): Promise<T> {
+export async function call<T>(
+  method: string,
+  path: string,
+  body?: unknown,
+  type = 'application/json',
+  version?: number,
+): Promise<T> {
   const init: RequestInit = {
     method,
-    headers: headers(body === undefined || body instanceof FormData ? {} : { 'Content-Type': type }),
+    headers: headers({
+      ...(body === undefined || body instanceof FormData ? {} : { 'Content-Type': type }),
+      ...(version === undefined ? {} : { 'If-Match': `"${version}"` }),
+    }),
   };
   if (body !== undefined)
     init.body = body instanceof FormData || typeof body === 'string' ? body : JSON.stringify(body);

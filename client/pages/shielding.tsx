@@ -3,31 +3,66 @@ import { three } from '../../server/figures/index.ts';
 import { all, call, type MaterialItem, type OptionItem, type StackItem } from '../api.ts';
 import { Empty, ProblemBox, useLoaded } from '../parts.tsx';
 import { studyId } from '../state.ts';
+import { OptionForm } from './optionForm.tsx';
 import { Solver } from './solver.tsx';
-
-type Unit = 'thicknessMm' | 'thicknessMil' | 'arealDensityGPerCm2';
-const UNITS: readonly (readonly [Unit, string])[] = [
-  ['thicknessMm', 'mm'],
-  ['thicknessMil', 'mil'],
-  ['arealDensityGPerCm2', 'g/cm²'],
-];
-
-interface Draft {
-  readonly key: number;
-  readonly materialId: string;
-  readonly value: string;
-  readonly unit: Unit;
-}
+import { Exchange } from './stackExchange.tsx';
+import { StackForm } from './stackForm.tsx';
 
 export function ShieldingPage() {
   const study = studyId.value!;
   const stacks = useLoaded(() => all<StackItem>(`/api/stacks?studyId=${study}`), study);
   const options = useLoaded(() => all<OptionItem>(`/api/options?studyId=${study}`), study);
   const materials = useLoaded(() => all<MaterialItem>('/api/materials'), 'materials');
+  const [edited, setEdited] = useState<string | null>(null);
+  const [refused, setRefused] = useState<unknown>(null);
+  const act = (work: Promise<unknown>, again: () => void) =>
+    work.then(
+      () => {
+        setRefused(null);
+        again();
+      },
+      (failure) => setRefused(failure),
+    );
+  const copyStack = ({ id: _id, version: _version, text: _text, layersShown: _shown, ...stack }: StackItem) =>
+    act(call('POST', '/api/stacks', { ...stack, name: `${stack.name}, copy` }), stacks.again);
+  const copyOption = (option: OptionItem) =>
+    act(
+      call('POST', '/api/options', {
+        studyId: study,
+        name: `${option.name}, copy`,
+        places: option.places.map(({ shieldText: _text, massKg: _mass, ...place }) => place),
+      }),
+      options.again,
+    );
+  const tools = (kind: string, item: { id: string; name: string }, copy: () => void, again: () => void) => (
+    <p class="small">
+      <button
+        type="button"
+        aria-label={`Edit ${item.name}`}
+        onClick={() => setEdited(edited === item.id ? null : item.id)}
+      >
+        {edited === item.id ? 'Close' : 'Edit'}
+      </button>{' '}
+      <button type="button" aria-label={`Copy ${item.name}`} onClick={copy}>
+        Copy
+      </button>{' '}
+      <button
+        type="button"
+        aria-label={`Delete ${item.name}`}
+        onClick={() => act(call('DELETE', `/api/${kind}/${item.id}`), again)}
+      >
+        Delete
+      </button>
+    </p>
+  );
+  const done = (again: () => void) => () => {
+    setEdited(null);
+    again();
+  };
   return (
     <>
       <h1>Shielding</h1>
-      <ProblemBox error={stacks.error ?? options.error ?? materials.error} />
+      <ProblemBox error={refused ?? stacks.error ?? options.error ?? materials.error} />
       <h2>Options</h2>
       {options.value?.length === 0 && (
         <Empty>No option yet. An option names the places of a spacecraft and their shields.</Empty>
@@ -45,10 +80,19 @@ export function ShieldingPage() {
                 </li>
               ))}
             </ul>
+            {tools('options', option, () => copyOption(option), options.again)}
+            {edited === option.id && stacks.value !== null && stacks.value.length > 0 && (
+              <OptionForm stacks={stacks.value} option={option} onDone={done(options.again)} />
+            )}
           </section>
         ))}
       </div>
-      {stacks.value !== null && stacks.value.length > 0 && <OptionForm stacks={stacks.value} onMade={options.again} />}
+      {stacks.value !== null && stacks.value.length > 0 && (
+        <details>
+          <summary>Put an option together</summary>
+          <OptionForm stacks={stacks.value} option={null} onDone={options.again} />
+        </details>
+      )}
       <h2>Stacks</h2>
       <div class="columns">
         {stacks.value?.map((stack) => (
@@ -75,10 +119,29 @@ export function ShieldingPage() {
                 ))}
               </tbody>
             </table>
+            {tools('stacks', stack, () => copyStack(stack), stacks.again)}
+            {edited === stack.id && materials.value !== null && (
+              <StackForm materials={materials.value} stack={stack} onDone={done(stacks.again)} />
+            )}
           </section>
         ))}
       </div>
-      {materials.value !== null && <StackForm materials={materials.value} onMade={stacks.again} />}
+      {materials.value !== null && (
+        <details>
+          <summary>Build a stack</summary>
+          <StackForm materials={materials.value} stack={null} onDone={stacks.again} />
+        </details>
+      )}
+      {stacks.value !== null && options.value !== null && (
+        <Exchange
+          stacks={stacks.value}
+          options={options.value}
+          onDone={() => {
+            stacks.again();
+            options.again();
+          }}
+        />
+      )}
       {stacks.value !== null && stacks.value.length > 0 && <Solver stacks={stacks.value} onMade={stacks.again} />}
     </>
   );
@@ -104,163 +167,5 @@ function LayerDrawing({ stack }: { stack: StackItem }) {
         );
       })}
     </svg>
-  );
-}
-
-function StackForm({ materials, onMade }: { materials: readonly MaterialItem[]; onMade: () => void }) {
-  const [name, setName] = useState('');
-  const [layers, setLayers] = useState<readonly Draft[]>([
-    { key: 1, materialId: 'Al', value: '2', unit: 'thicknessMm' },
-  ]);
-  const [error, setError] = useState<unknown>(null);
-  const change = (key: number, part: Partial<Draft>) =>
-    setLayers((old) => old.map((layer) => (layer.key === key ? { ...layer, ...part } : layer)));
-  const make = async (event: SubmitEvent) => {
-    event.preventDefault();
-    try {
-      await call('POST', '/api/stacks', {
-        studyId: studyId.value,
-        name,
-        geometry: 'slab',
-        layers: layers.map((layer) => ({ materialId: layer.materialId, [layer.unit]: Number(layer.value) })),
-      });
-      setError(null);
-      setName('');
-      onMade();
-    } catch (failure) {
-      setError(failure);
-    }
-  };
-  return (
-    <details>
-      <summary>Build a stack</summary>
-      <form onSubmit={make}>
-        <label>
-          Name <input required value={name} onInput={(event) => setName(event.currentTarget.value)} />
-        </label>
-        <ol>
-          {layers.map((layer) => (
-            <li key={layer.key}>
-              <select
-                aria-label="Material"
-                value={layer.materialId}
-                onChange={(event) => change(layer.key, { materialId: event.currentTarget.value })}
-              >
-                {materials.map((entry) => (
-                  <option key={entry.id} value={entry.id}>
-                    {entry.name} ({three(entry.densityGPerCm3)} g/cm³)
-                  </option>
-                ))}
-              </select>{' '}
-              <input
-                aria-label="Thickness"
-                inputMode="decimal"
-                size={8}
-                value={layer.value}
-                onInput={(event) => change(layer.key, { value: event.currentTarget.value })}
-              />{' '}
-              <select
-                aria-label="Unit"
-                value={layer.unit}
-                onChange={(event) => change(layer.key, { unit: event.currentTarget.value as Unit })}
-              >
-                {UNITS.map(([unit, label]) => (
-                  <option key={unit} value={unit}>
-                    {label}
-                  </option>
-                ))}
-              </select>{' '}
-              {layers.length > 1 && (
-                <button
-                  type="button"
-                  onClick={() => setLayers((old) => old.filter((entry) => entry.key !== layer.key))}
-                >
-                  Remove
-                </button>
-              )}
-            </li>
-          ))}
-        </ol>
-        <button
-          type="button"
-          onClick={() =>
-            setLayers((old) => [
-              ...old,
-              { key: Math.max(...old.map((l) => l.key)) + 1, materialId: 'Al', value: '1', unit: 'thicknessMm' },
-            ])
-          }
-        >
-          Add a layer inside
-        </button>{' '}
-        <button type="submit" class="primary">
-          Make stack
-        </button>
-        <ProblemBox error={error} />
-      </form>
-    </details>
-  );
-}
-
-function OptionForm({ stacks, onMade }: { stacks: readonly StackItem[]; onMade: () => void }) {
-  const [error, setError] = useState<unknown>(null);
-  const [rows, setRows] = useState(1);
-  const make = async (event: SubmitEvent & { currentTarget: HTMLFormElement }) => {
-    event.preventDefault();
-    const data = new FormData(event.currentTarget);
-    const places = Array.from({ length: rows }, (_, k) => {
-      const area = Number(data.get(`area${k}`));
-      return {
-        placeId: data.get(`placeId${k}`),
-        name: data.get(`placeId${k}`),
-        stackId: data.get(`stackId${k}`),
-        ...(area > 0 ? { areaM2: area } : {}),
-      };
-    });
-    try {
-      await call('POST', '/api/options', { studyId: studyId.value, name: data.get('name'), places });
-      setError(null);
-      onMade();
-    } catch (failure) {
-      setError(failure);
-    }
-  };
-  return (
-    <details>
-      <summary>Put an option together</summary>
-      <form onSubmit={make}>
-        <label>
-          Name <input name="name" required />
-        </label>
-        {Array.from({ length: rows }, (_, k) => (
-          <fieldset key={k} class="grid">
-            <legend>Place {k + 1}</legend>
-            <label>
-              Place, as the parts name it{' '}
-              <input name={`placeId${k}`} required defaultValue={k === 0 ? 'deck' : 'core'} />
-            </label>
-            <label>
-              Stack{' '}
-              <select name={`stackId${k}`}>
-                {stacks.map((stack) => (
-                  <option key={stack.id} value={stack.id}>
-                    {stack.name}
-                  </option>
-                ))}
-              </select>
-            </label>
-            <label>
-              Area, m² <input name={`area${k}`} inputMode="decimal" defaultValue="1" />
-            </label>
-          </fieldset>
-        ))}
-        <button type="button" onClick={() => setRows(rows + 1)}>
-          Add a place
-        </button>{' '}
-        <button type="submit" class="primary">
-          Make option
-        </button>
-        <ProblemBox error={error} />
-      </form>
-    </details>
   );
 }

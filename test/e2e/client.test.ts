@@ -115,15 +115,16 @@ describe.skipIf(!READY)('client in a browser', () => {
     ]) {
       await page.getByText('Build a stack').click();
       await page.locator('details[open] input').first().fill(name);
-      await page.getByLabel('Thickness').fill(mm);
+      await page.getByLabel('Thickness of layer 1').fill(mm);
       await page.getByRole('button', { name: 'Make stack' }).click();
       await page.getByRole('heading', { name, exact: true }).waitFor();
       await page.goto(`${base}/shielding`);
     }
     for (const name of ['Thin', 'Thick']) {
       await page.getByText('Put an option together').click();
-      await page.locator('details[open] input[name=name]').fill(`${name} walls`);
-      await page.locator('details[open] select').selectOption({ label: name });
+      const form = page.getByRole('form', { name: 'New option' });
+      await form.locator('input').first().fill(`${name} walls`);
+      await form.locator('select').nth(1).selectOption({ label: name });
       await page.getByRole('button', { name: 'Make option' }).click();
       await page.getByRole('heading', { name: `${name} walls` }).waitFor();
       await page.goto(`${base}/shielding`);
