@@ -1,6 +1,13 @@
 import { useState } from 'preact/hooks';
-import { three } from '../../server/figures/index.ts';
+import {
+  ENCOUNTER_LOOKS,
+  type EncounterLook,
+  type EncounterView,
+  encounterScene,
+  three,
+} from '../../server/figures/index.ts';
 import { all, type CaseItem, call, type TrajectoryItem } from '../api.ts';
+import { Figure } from '../figure.tsx';
 import { Empty, Link, ProblemBox, useLoaded } from '../parts.tsx';
 import { go, route, studyId } from '../state.ts';
 import { DataTable } from '../table.tsx';
@@ -61,6 +68,7 @@ export function TrajectoriesPage() {
         />
       )}
       {shown !== undefined && <Reading entry={shown} onDeleted={again} />}
+      {shown !== undefined && <Encounter key={shown.id} entry={shown} />}
       {value !== null && value.length > 0 && <Cases trajectories={value} />}
     </>
   );
@@ -68,6 +76,35 @@ export function TrajectoriesPage() {
 
 function closest(entry: TrajectoryItem) {
   return [...entry.closestApproaches].sort((a, b) => a.radiusKm - b.radiusKm)[0];
+}
+
+function Encounter({ entry }: { entry: TrajectoryItem }) {
+  const [look, setLook] = useState<EncounterLook>('side');
+  const { value, error } = useLoaded(
+    () => call<EncounterView>('GET', `/api/trajectories/${entry.id}/encounter`),
+    entry.id,
+  );
+  return (
+    <section aria-label={`Encounter of ${entry.name}`}>
+      <ProblemBox error={error} />
+      <label>
+        Seen{' '}
+        <select value={look} onChange={(event) => setLook(event.currentTarget.value as EncounterLook)}>
+          {ENCOUNTER_LOOKS.map(([id, label]) => (
+            <option key={id} value={id}>
+              {label}
+            </option>
+          ))}
+        </select>
+      </label>
+      {value !== null && (
+        <Figure
+          scene={encounterScene(value, look)}
+          caption="The path about closest approach; axes and field lines as the rotation model has them then, which may be off by the phase error."
+        />
+      )}
+    </section>
+  );
 }
 
 function Reading({ entry, onDeleted }: { entry: TrajectoryItem; onDeleted: () => void }) {

@@ -5,6 +5,7 @@ import { z } from 'zod';
 import { AppError } from '../errors.ts';
 import { defaultFieldModel } from '../field/index.ts';
 import { defaultRotationModel } from '../frames/rotation.ts';
+import { parseEpoch } from '../time/index.ts';
 import { sketchFlyby, sketchOrbit, type TrajectoryRequest } from '../trajectory/index.ts';
 import { documentRoutes } from './documentRoutes.ts';
 import { defineRoute, type Route } from './routes.ts';
@@ -133,6 +134,33 @@ export function trajectoryRoutes(shop: Shop, maxUploadBytes: number): Route[] {
           offsetDeg: query.offsetDeg,
           stepS: query.stepS ?? null,
           maxPoints: query.maxPoints,
+        });
+      },
+    }),
+    defineRoute({
+      method: 'get',
+      path: '/api/trajectories/{id}/encounter',
+      tag: 'trajectories',
+      summary:
+        'What a picture of the encounter shows: path, axes, field lines and Sun at closest approach, ICRF, planet radii',
+      query: z.object({
+        fieldModelId: z.string().optional(),
+        rotationModelId: z.string().optional(),
+        offsetDeg: z.coerce.number().min(-360).max(360).default(0),
+      }),
+      answer: anyObject,
+      handler: ({ params, query }) => {
+        const trajectory = shop.storedTrajectory(params.id);
+        const { summary } = found(shop.trajectories.get(params.id), 'trajectory', params.id).body;
+        const [closest] = [...summary.closestApproaches].sort((a, b) => a.radiusKm - b.radiusKm);
+        return shop.pool.run({
+          kind: 'encounter',
+          filePath: shop.blobs.path(trajectory.blobSha256),
+          request: trajectory.request,
+          fieldModelId: query.fieldModelId ?? defaultFieldModel(trajectory.planet).id,
+          rotationModelId: query.rotationModelId ?? defaultRotationModel(trajectory.planet).id,
+          offsetDeg: query.offsetDeg,
+          closestTdbS: closest === undefined ? trajectory.startTdbS : parseEpoch(closest.utc, 'UTC'),
         });
       },
     }),

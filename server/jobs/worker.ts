@@ -25,6 +25,7 @@ import { type ResponseOptions, runShard, type ShardTally, type ShardTask } from 
 import type { ShieldInput, ShieldResponse } from '../shielding/types.ts';
 import { readTrajectory, type TrajectoryRequest, type TrajectorySummary } from '../trajectory/index.ts';
 import type { SummaryRequest } from './assessment.ts';
+import { type EncounterInput, encounterView } from './encounter.ts';
 import { type EvaluateFieldInput, evaluateField, type SamplePathInput, samplePath } from './pathSampling.ts';
 
 /** What a worker can be asked for; every task and answer is a plain serialisable value. */
@@ -51,6 +52,7 @@ export type WorkerTask =
   | { readonly kind: 'fieldMapShard'; readonly task: FieldMapTask }
   | { readonly kind: 'assess'; readonly order: AssessOrder }
   | ({ readonly kind: 'samplePath'; readonly filePath: string; readonly request: TrajectoryRequest } & SamplePathInput)
+  | ({ readonly kind: 'encounter'; readonly filePath: string; readonly request: TrajectoryRequest } & EncounterInput)
   | ({ readonly kind: 'evaluateField' } & EvaluateFieldInput)
   | {
       readonly kind: 'adiabaticity';
@@ -128,6 +130,8 @@ export default async function work(task: WorkerTask): Promise<unknown> {
       return assess(fillOrder(task.order));
     case 'samplePath':
       return withTrajectory(task.filePath, task.request, ({ path }) => samplePath(path, task));
+    case 'encounter':
+      return withTrajectory(task.filePath, task.request, ({ path }) => encounterView(path, task));
     case 'evaluateField':
       return evaluateField(task);
     case 'adiabaticity': {
