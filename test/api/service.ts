@@ -30,9 +30,18 @@ export function startService(environment: Record<string, string> = {}): TestServ
     shop,
     rows: () =>
       Object.fromEntries(
-        ['studies', 'trajectories', 'cases', 'stacks', 'options', 'parts', 'assessments', 'reports', 'jobs', 'beltTables'].map(
-          (table) => [table, (store.prepare(`SELECT count(*) AS n FROM ${table}`).get() as { n: number }).n],
-        ),
+        [
+          'studies',
+          'trajectories',
+          'cases',
+          'stacks',
+          'options',
+          'parts',
+          'assessments',
+          'reports',
+          'jobs',
+          'beltTables',
+        ].map((table) => [table, (store.prepare(`SELECT count(*) AS n FROM ${table}`).get() as { n: number }).n]),
       ),
     async stop() {
       await shop.runner.stop();
