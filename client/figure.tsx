@@ -35,7 +35,7 @@ export function Figure({ scene, caption }: { scene: Scene; caption: string }) {
         viewBox={`0 0 ${scene.widthPx} ${scene.heightPx}`}
         role="img"
         aria-label={`${scene.title}. ${scene.description}`}
-        tabIndex={0}
+        tabindex={0}
         onMouseMove={move}
         onMouseLeave={() => setAt(-1)}
         onKeyDown={key}

@@ -1,5 +1,13 @@
 import { useEffect, useState } from 'preact/hooks';
-import { fluenceScene, fluxHistoryScene, percent, phaseFluenceScene, three } from '../../server/figures/index.ts';
+import {
+  fieldComparisonScene,
+  fluenceByLScene,
+  fluenceScene,
+  fluxHistoryScene,
+  percent,
+  phaseFluenceScene,
+  three,
+} from '../../server/figures/index.ts';
 import { all, call, type ExposureState, type TrajectoryItem } from '../api.ts';
 import { Figure } from '../figure.tsx';
 import { Empty, Link, ProblemBox, Progress, useLoaded } from '../parts.tsx';
@@ -17,6 +25,7 @@ export function EnvironmentPage() {
   const study = studyId.value!;
   const { value, error } = useLoaded(() => all<TrajectoryItem>(`/api/trajectories?studyId=${study}`), study);
   const chosen = route.value.split('/')[2] ?? value?.[0]?.id;
+  const flown = value?.find((entry) => entry.id === chosen);
   const [mode, setMode] = useState('');
   return (
     <>
@@ -42,22 +51,30 @@ export function EnvironmentPage() {
           </select>
         </label>
       </div>
-      {chosen !== undefined && value !== null && (
-        <Exposure key={`${chosen}${mode}`} trajectoryId={chosen} mode={mode} />
+      {flown !== undefined && (
+        <Exposure key={`${flown.id}${mode}`} trajectoryId={flown.id} planet={flown.planet} mode={mode} />
       )}
     </>
   );
 }
 
-function Exposure({ trajectoryId, mode }: { trajectoryId: string; mode: string }) {
+interface ExposureProps {
+  readonly trajectoryId: string;
+  readonly planet: TrajectoryItem['planet'];
+  readonly mode: string;
+}
+
+function Exposure({ trajectoryId, planet, mode }: ExposureProps) {
   const [state, setState] = useState<ExposureState | null>(null);
   const [error, setError] = useState<unknown>(null);
   useEffect(() => {
     let gone = false;
     const watch = async () => {
       try {
+        const fields = await all<{ id: string; planet: string }>('/api/field-models');
         const { id } = await call<{ id: string }>('POST', '/api/exposures', {
           trajectoryId,
+          compareFieldModelIds: fields.filter((entry) => entry.planet === planet).map((entry) => entry.id),
           ...(mode === '' ? {} : { phase: { mode } }),
         });
         while (!gone) {
@@ -75,7 +92,7 @@ function Exposure({ trajectoryId, mode }: { trajectoryId: string; mode: string }
     return () => {
       gone = true;
     };
-  }, [trajectoryId, mode]);
+  }, [trajectoryId, planet, mode]);
   if (error !== null) return <ProblemBox error={error} />;
   if (state?.problem != null) return <ProblemBox error={new Error(state.problem.detail)} />;
   if (state?.summary == null)
@@ -102,6 +119,13 @@ function Exposure({ trajectoryId, mode }: { trajectoryId: string; mode: string }
       <Figure scene={fluenceScene(summary)} caption="Integral fluence, omnidirectional, nominal." />
       {summary.byPhase.length > 2 && (
         <Figure scene={phaseFluenceScene(summary)} caption="Electrons above 1 MeV against the rotation offset." />
+      )}
+      <Figure scene={fluenceByLScene(summary)} caption="Nominal fluence above 1 MeV in each bin of L." />
+      {summary.fieldComparison.length > 1 && (
+        <Figure
+          scene={fieldComparisonScene(summary)}
+          caption="Electron fluence on the same path and phase, median belts, by field model."
+        />
       )}
       <h3>Fluence and peak flux of electrons, nominal</h3>
       <DataTable

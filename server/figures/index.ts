@@ -4,3 +4,4 @@ export { ENCOUNTER_LOOKS, type EncounterLook, type EncounterView, encounterScene
 export { fluenceScene, fluxHistoryScene, phaseFluenceScene } from './fluxFigures.ts';
 export { percent, powerOfTen, three } from './format.ts';
 export type { Paint, ReadOut, Scene, SceneNode, ScenePath, SceneText } from './scene.ts';
+export { fieldComparisonScene, fluenceByLScene } from './shareFigures.ts';
