@@ -14,11 +14,20 @@ import { Empty, Link, ProblemBox, Progress, useLoaded } from '../parts.tsx';
 import { route, studyId } from '../state.ts';
 import { DataTable } from '../table.tsx';
 
+const FIELD = { p05: 'p05PerCm2', p50: 'p50PerCm2', p95: 'p95PerCm2' } as const;
+
 const MODES = [
   ['', 'as the rotation model allows'],
   ['sweep', 'sweep over all phases'],
   ['drawn', 'drawn from the model’s error'],
   ['published', 'as published'],
+] as const;
+
+/** Scenarios of the belts beside their medians. */
+const SCENARIOS = [
+  ['satelliteDips', 'satellites cut dips'],
+  ['protonUpperBound', 'upper bound of the protons'],
+  ['longTermMean', 'long-term mean of Uranus instead of the state met'],
 ] as const;
 
 export function EnvironmentPage() {
@@ -27,6 +36,7 @@ export function EnvironmentPage() {
   const chosen = route.value.split('/')[2] ?? value?.[0]?.id;
   const flown = value?.find((entry) => entry.id === chosen);
   const [mode, setMode] = useState('');
+  const [scenarios, setScenarios] = useState<readonly string[]>([]);
   return (
     <>
       <h1>Environment</h1>
@@ -51,8 +61,29 @@ export function EnvironmentPage() {
           </select>
         </label>
       </div>
+      <fieldset class="row">
+        <legend>Belts, beside their median</legend>
+        {SCENARIOS.map(([id, label]) => (
+          <label key={id}>
+            <input
+              type="checkbox"
+              checked={scenarios.includes(id)}
+              onChange={() =>
+                setScenarios((old) => (old.includes(id) ? old.filter((one) => one !== id) : [...old, id]))
+              }
+            />{' '}
+            {label}
+          </label>
+        ))}
+      </fieldset>
       {flown !== undefined && (
-        <Exposure key={`${flown.id}${mode}`} trajectoryId={flown.id} planet={flown.planet} mode={mode} />
+        <Exposure
+          key={`${flown.id}${mode}${scenarios.join()}`}
+          trajectoryId={flown.id}
+          planet={flown.planet}
+          mode={mode}
+          scenarios={scenarios}
+        />
       )}
     </>
   );
@@ -62,9 +93,10 @@ interface ExposureProps {
   readonly trajectoryId: string;
   readonly planet: TrajectoryItem['planet'];
   readonly mode: string;
+  readonly scenarios: readonly string[];
 }
 
-function Exposure({ trajectoryId, planet, mode }: ExposureProps) {
+function Exposure({ trajectoryId, planet, mode, scenarios }: ExposureProps) {
   const [state, setState] = useState<ExposureState | null>(null);
   const [error, setError] = useState<unknown>(null);
   useEffect(() => {
@@ -76,6 +108,9 @@ function Exposure({ trajectoryId, planet, mode }: ExposureProps) {
           trajectoryId,
           compareFieldModelIds: fields.filter((entry) => entry.planet === planet).map((entry) => entry.id),
           ...(mode === '' ? {} : { phase: { mode } }),
+          ...(scenarios.includes('satelliteDips') ? { satelliteDips: true } : {}),
+          ...(scenarios.includes('protonUpperBound') ? { protonUpperBound: true } : {}),
+          ...(scenarios.includes('longTermMean') ? { solarWindState: 'long-term-mean' } : {}),
         });
         while (!gone) {
           const now = await call<ExposureState>('GET', `/api/exposures/${id}`);
@@ -92,7 +127,7 @@ function Exposure({ trajectoryId, planet, mode }: ExposureProps) {
     return () => {
       gone = true;
     };
-  }, [trajectoryId, planet, mode]);
+  }, [trajectoryId, planet, mode, scenarios]);
   if (error !== null) return <ProblemBox error={error} />;
   if (state?.problem != null) return <ProblemBox error={new Error(state.problem.detail)} />;
   if (state?.summary == null)
@@ -112,6 +147,10 @@ function Exposure({ trajectoryId, planet, mode }: ExposureProps) {
         <dd>{summary.phaseSigmaDeg > 180 ? 'unknown phase' : `${three(summary.phaseSigmaDeg)}°`}</dd>
         <dt>90 % of the fluence in</dt>
         <dd>{three(summary.hoursOf90Percent)} h</dd>
+        <dt>Draws above the Kennel-Petschek level</dt>
+        <dd>
+          {percent(summary.percentiles.aboveKennelPetschekShare)} ({summary.percentiles.kennelPetschekMeasure})
+        </dd>
         <dt>From where nothing was measured</dt>
         <dd>{percent(electrons.byEvidence.extrapolated)} of the electrons above 1 MeV</dd>
       </dl>
@@ -130,7 +169,11 @@ function Exposure({ trajectoryId, planet, mode }: ExposureProps) {
       <h3>Fluence and peak flux of electrons, nominal</h3>
       <DataTable
         name="Fluence and peak flux of electrons"
-        rows={electrons.peaks.map((peak, index) => ({ ...peak, fluence: electrons.fluencePerCm2[index] }))}
+        rows={electrons.peaks.map((peak, index) => ({
+          ...peak,
+          fluence: electrons.fluencePerCm2[index],
+          band: summary.percentiles.electron[index],
+        }))}
         keyOf={(peak) => String(peak.thresholdMeV)}
         columns={[
           {
@@ -145,6 +188,12 @@ function Exposure({ trajectoryId, planet, mode }: ExposureProps) {
             value: (peak) => peak.fluence,
             cell: (peak) => three(peak.fluence),
           },
+          ...(['p05', 'p50', 'p95'] as const).map((p) => ({
+            header: `${Number(p.slice(1))} %, cm⁻²`,
+            numeric: true,
+            value: (peak: { band: (typeof summary.percentiles.electron)[number] }) => peak.band?.[FIELD[p]],
+            cell: (peak: { band: (typeof summary.percentiles.electron)[number] }) => three(peak.band?.[FIELD[p]]),
+          })),
           {
             header: 'Peak flux, cm⁻² s⁻¹',
             numeric: true,
