@@ -1,84 +1,22 @@
 /** The figures of the environment page in a real browser: read by keyboard, saved as numbers, in both themes. */
-import { existsSync, mkdirSync, mkdtempSync, readFileSync, rmSync } from 'node:fs';
-import { createServer, type Server } from 'node:http';
-import type { AddressInfo } from 'node:net';
-import { tmpdir } from 'node:os';
+import { readFileSync } from 'node:fs';
 import { join } from 'node:path';
 import { fileURLToPath } from 'node:url';
-import { pino } from 'pino';
-import { type Browser, chromium, type Page } from 'playwright-core';
+import type { Page } from 'playwright-core';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
-import { openStore } from '../../db/open.ts';
-import { Shop } from '../../server/api/shop.ts';
-import { createApp } from '../../server/app.ts';
-import { BUILT_CLIENT, builtClient } from '../../server/clientPages.ts';
-import { readConfig } from '../../server/config.ts';
-import { Pool } from '../../server/jobs/pool.ts';
-
-const CHROMIUM = '/usr/bin/chromium';
-const READY = existsSync(CHROMIUM) && existsSync(join(BUILT_CLIENT, 'index.html'));
-if (!READY) console.error(`${CHROMIUM} or the built client (npm run build) is missing: the browser tests are skipped`);
-const SHOTS = fileURLToPath(new URL('../output/', import.meta.url));
+import { type BrowserService, READY, SHOTS, startBrowser } from './browser.ts';
 
 describe.skipIf(!READY)('figures in a browser', () => {
-  let dataDir: string;
-  let shop: Shop;
-  let pool: Pool;
-  let server: Server;
-  let browser: Browser;
+  let service: BrowserService;
   let page: Page;
   let base: string;
-  const outside: string[] = [];
+  let outside: string[];
 
   beforeAll(async () => {
-    mkdirSync(SHOTS, { recursive: true });
-    dataDir = mkdtempSync(join(tmpdir(), 'sidelong-e2e-'));
-    pool = new Pool();
-    const store = openStore(dataDir);
-    shop = new Shop(store, dataDir, pool, (error) => console.error(error));
-    shop.studies.insert(null, 'Browser study', {
-      description: '',
-      requiredRdm: 2,
-      verdictPercentile: 95,
-      phaseTreatment: 'joint',
-      extrapolatedShareLimit: 0.5,
-      distributionMark: '',
-    });
-    const app = createApp(shop, readConfig({ DATA_DIR: dataDir }), pino({ level: 'silent' }), builtClient());
-    server = createServer(app);
-    await new Promise<void>((resolve) => server.listen(0, '127.0.0.1', resolve));
-    base = `http://127.0.0.1:${(server.address() as AddressInfo).port}`;
-    browser = await chromium.launch({
-      executablePath: CHROMIUM,
-      args: [
-        '--headless',
-        '--no-sandbox',
-        '--disable-gpu',
-        '--disable-quic',
-        '--no-first-run',
-        '--disable-background-networking',
-        '--disable-component-update',
-        '--disable-sync',
-      ],
-    });
-    page = await browser.newPage({ viewport: { width: 1280, height: 800 } });
-    page.on('request', (request) => {
-      if (!request.url().startsWith(base) && !request.url().startsWith('blob:')) outside.push(request.url());
-    });
-    page.on('console', (message) => {
-      if (message.type() === 'error' && /Content Security Policy/.test(message.text())) outside.push(message.text());
-    });
+    service = await startBrowser(800);
+    ({ page, base, outside } = service);
   });
-
-  afterAll(async () => {
-    await browser?.close();
-    await shop?.runner.stop();
-    server?.closeAllConnections();
-    server?.close();
-    await pool?.close();
-    shop?.store.close();
-    rmSync(dataDir, { recursive: true, force: true });
-  });
+  afterAll(() => service?.stop());
 
   it('shows the fluence by L and the field models compared, read by keyboard and saved as numbers', async () => {
     await page.goto(`${base}/trajectories`);
